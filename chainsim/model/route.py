@@ -1,0 +1,378 @@
+"""Where every pin lies before the first step: in seats on the wraps, evenly on the strands.
+
+The chain is walked once round the loop from a reference wheel.  Each wheel turns until the pin
+that arrives finds a seat, so strands are whole numbers of links long and nothing is strained.
+What the loop is too long or too short by is then taken up where it would be in the workshop:
+movable axles are shifted until the loop closes taut; between fixed axles surplus links bow out in
+the lowest place, and a small shortage stretches the strands.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from typing import NamedTuple
+
+import numpy as np
+from scipy.optimize import brentq
+
+from chainsim.errors import LayoutError
+from chainsim.model.bow import bow_out
+from chainsim.model.tangents import Route, Wheel, route
+
+__all__ = ["Laid", "Route", "Wheel", "lay_chain", "route"]
+
+LARGEST_STRETCH = 0.03
+"""Share of the pitch by which the strands may be stretched to close a short loop
+(dimensionless): beyond it the force would break a small chain, and the count is refused."""
+
+SEATED = 0.15
+"""A pin of a bow counts as seated when nearer to a seat than this share of the pitch
+(dimensionless)."""
+
+HANGING = math.cos(math.radians(45.0))
+"""The wrap of the lowest wheel takes the surplus when its middle points down within 45°
+(dimensionless cosine); else the lowest strand does."""
+
+
+class Laid(NamedTuple):
+    """A chain laid round its wheels.
+
+    Attributes
+    ----------
+    pin : ndarray, shape (n_links, 2)
+        Pin centers in the direction of travel [m]; pin 0 is the one on the first wheel nearest
+        its exit.
+    wheel_angle : ndarray, shape (n_wheels,)
+        Angle of seat 0 of each wheel, from +x, counterclockwise [rad].
+    seat : ndarray of int, shape (n_links,)
+        Wheel on which each pin is seated (dimensionless), −1 for none.
+    wheel_center : ndarray, shape (n_wheels, 2)
+        Axles, movable ones shifted [m].
+    travel : ndarray, shape (n_wheels,)
+        Shift of each axle along its way [m].
+    surplus : float
+        Links too many for fixed axles, negative for a stretched loop (dimensionless).
+    """
+
+    pin: np.ndarray
+    wheel_angle: np.ndarray
+    seat: np.ndarray
+    wheel_center: np.ndarray
+    travel: np.ndarray
+    surplus: float
+
+
+class _Walk(NamedTuple):
+    """Pins placed in order from the exit of the reference wheel round to its last known pin."""
+
+    pin: list[np.ndarray]
+    seat: list[int]
+    seat_angle: dict[int, float]
+    first: np.ndarray
+    last: np.ndarray
+    gap: float
+    links_left: int
+
+
+def lay_chain(
+    wheels: Sequence[Wheel],
+    pitch: float,
+    n_links: int,
+    down: tuple[float, float] = (0.0, -1.0),
+) -> Laid:
+    """Place every pin of a chain of `n_links` round the wheels.
+
+    Parameters
+    ----------
+    wheels : sequence of Wheel
+        In the order of travel; see `route` for what is refused.
+    pitch : float
+        Pitch of the chain, growth included [m].
+    n_links : int
+        Number of links (dimensionless).
+    down : tuple of float, shape (2,)
+        Unit direction of gravity (dimensionless): surplus chain goes there.
+
+    Returns
+    -------
+    Laid
+        Pins, wheel angles, seats and axles.
+
+    Raises
+    ------
+    LayoutError
+        If the loop is too short to close with 3 % of stretch, or no shift of the movable axles
+        closes it, or the route itself is impossible.
+
+    Notes
+    -----
+    `Wheel.phase` is kept by the wheel where the walk starts: the first one, unless surplus chain
+    has to bow out elsewhere.  Other wheels keep it up to the nearest seat.
+    """
+    wheels = tuple(wheels)
+    movable = any(wheel.movable is not None for wheel in wheels)
+    travel = np.zeros(len(wheels))
+    if movable and len(wheels) > 1:
+        travel = _closing_travel(wheels, pitch, n_links, down)
+        wheels = tuple(w.moved(d) for w, d in zip(wheels, travel, strict=True))
+    path = route(wheels, pitch, down)
+    if len(wheels) == 1:
+        return _number_pins(path, _lay_hanging(path, n_links, down), travel, math.nan)
+    walk = _walk(path, n_links, 0, pitch)
+    surplus = walk.links_left - walk.gap / pitch
+    if movable or surplus <= 0.0:
+        return _number_pins(path, _lay_taut(path, n_links, walk), travel, surplus)
+    return _number_pins(path, _lay_slack(path, n_links, down), travel, surplus)
+
+
+def _walk(
+    path: Route, n_links: int, reference: int, spacing: float, in_wrap: bool = False
+) -> _Walk:
+    """Walk from the exit of the reference wheel round to where the loop has to close.
+
+    With `in_wrap` false that is the entry seat of the reference wheel, and the gap is the last
+    strand; with `in_wrap` true it is the pin that arrives at the reference wheel wherever it
+    comes to lie, and the gap is the wrap of that wheel.
+    """
+    count, wheel = len(path.wheels), path.wheels[reference]
+    step = wheel.seat_step(path.pitch)
+    leaving = _exit_place(path, reference, None)
+    seat_angle = {reference: leaving}
+    here = first = _on_wheel(wheel, leaving)
+    pins, seats, used = [here], [reference], 0
+    for hop in range(1, count + int(in_wrap)):
+        k = (reference + hop) % count
+        wheel = path.wheels[k]
+        links, arriving = _arrival(path, k, here, spacing)
+        stop = _on_wheel(wheel, arriving)
+        pins += list(_between(here, stop, links))
+        seats += [-1] * (links - 1)
+        used += links
+        here = stop
+        pins.append(here)
+        seats.append(k)
+        if k == reference:
+            break
+        seat_angle[k] = arriving
+        for angle in _wrap_places(path, k, arriving):
+            here = _on_wheel(wheel, angle)
+            pins.append(here)
+            seats.append(k)
+            used += 1
+    if not in_wrap:
+        entry_angle, held = _entry_place(path, reference, leaving, step)
+        first = _on_wheel(path.wheels[reference], entry_angle)
+        used += held
+    gap = float(np.linalg.norm(first - here))
+    return _Walk(pins, seats, seat_angle, first, here, gap, n_links - used)
+
+
+def _travel_angle(path: Route, k: int, entering: bool) -> float:
+    """Return the angle of entry, or of exit, growing in the direction of travel [rad]."""
+    start = path.wheels[k].side * path.wrap_in[k]
+    return float(start if entering else start + path.wrap[k])
+
+
+def _on_wheel(wheel: Wheel, travel_angle: float) -> np.ndarray:
+    """Return the place of a pin on a wheel [m]."""
+    angle = wheel.side * travel_angle
+    return np.array(wheel.center) + wheel.radius * np.array([math.cos(angle), math.sin(angle)])
+
+
+def _exit_place(path: Route, k: int, known_seat: float | None) -> float:
+    """Return the travel angle of the last seat that supports the leaving strand [rad]."""
+    wheel = path.wheels[k]
+    leaving = _travel_angle(path, k, entering=False)
+    if known_seat is None:
+        if wheel.phase is None:
+            return leaving
+        known_seat = wheel.side * wheel.phase
+    step = wheel.seat_step(path.pitch)
+    return known_seat + step * math.floor((leaving + 0.5 * step - known_seat) / step + 1e-9)
+
+
+def _wrap_places(path: Route, k: int, arriving: float) -> list[float]:
+    """Return the travel angles of the pins that follow the arriving one on a wheel [rad]."""
+    step = path.wheels[k].seat_step(path.pitch)
+    held = round((_exit_place(path, k, arriving) - arriving) / step)
+    return [arriving + step * i for i in range(1, held + 1)]
+
+
+def _entry_place(path: Route, k: int, leaving: float, step: float) -> tuple[float, int]:
+    """Return the travel angle of the first supporting seat [rad] and the links up to the exit."""
+    entering = _travel_angle(path, k, entering=True)
+    held = max(0, math.floor((leaving - entering + 0.5 * step) / step - 1e-9))
+    return leaving - held * step, held
+
+
+def _arrival(path: Route, k: int, here: np.ndarray, spacing: float) -> tuple[int, float]:
+    """Return links and travel angle [rad] of the pin that reaches wheel `k` from `here`.
+
+    The pin lies where the circle of a whole number of links about `here` cuts the pin circle of
+    the wheel, at the crossing nearest to the tangent point.
+    """
+    wheel = path.wheels[k]
+    entering = _travel_angle(path, k, entering=True)
+    links = max(1, round(float(np.linalg.norm(_on_wheel(wheel, entering) - here)) / spacing))
+    offset = here - np.array(wheel.center)
+    distance = float(np.hypot(*offset))
+    reach = links * spacing
+    cosine = (distance**2 + wheel.radius**2 - reach**2) / (2.0 * distance * wheel.radius)
+    spread = math.acos(min(1.0, max(-1.0, cosine)))
+    toward = wheel.side * math.atan2(offset[1], offset[0])
+    candidates = (toward + spread, toward - spread)
+    turns = [math.remainder(angle - entering, 2.0 * math.pi) for angle in candidates]
+    return links, entering + min(turns, key=abs)
+
+
+def _between(start: np.ndarray, end: np.ndarray, links: int) -> np.ndarray:
+    """Space the inner pins of a straight strand evenly: shape (links − 1, 2) [m]."""
+    share = np.arange(1, links)[:, None] / links
+    return start + share * (end - start)
+
+
+def _closing_travel(
+    wheels: tuple[Wheel, ...], pitch: float, n_links: int, down: tuple[float, float]
+) -> np.ndarray:
+    """Return the shift of each axle [m] at which the loop closes exactly taut."""
+    slope = _length_slopes(wheels, pitch, down)
+    largest = float(np.abs(slope).max())
+    if largest < 1e-3:
+        raise LayoutError("the movable axles do not change the length of the loop")
+    share = slope / largest
+
+    def excess(shift: float) -> float:
+        moved = tuple(w.moved(shift * part) for w, part in zip(wheels, share, strict=True))
+        walk = _walk(route(moved, pitch, down), n_links, 0, pitch)
+        return walk.gap - walk.links_left * pitch
+
+    rate = float((slope * share).sum())
+    guess = (n_links - route(wheels, pitch, down).links) * pitch / rate
+    try:
+        for width in (0.25, 1.0, 3.0):
+            low, high = guess - width * pitch, guess + width * pitch
+            if excess(low) < 0.0 < excess(high):
+                return float(brentq(excess, low, high, xtol=1e-15, rtol=8.9e-16)) * share
+    except LayoutError as error:
+        raise LayoutError(f"{n_links} links do not close this loop: {error}") from error
+    raise LayoutError(f"no travel of the movable axles closes the loop taut with {n_links} links")
+
+
+def _length_slopes(
+    wheels: tuple[Wheel, ...], pitch: float, down: tuple[float, float]
+) -> np.ndarray:
+    """Return how fast the loop grows as each axle is shifted (dimensionless), 0 if fixed."""
+    slope = np.zeros(len(wheels))
+    small = 1e-4 * pitch
+    for k, wheel in enumerate(wheels):
+        if wheel.movable is not None:
+            ends = [
+                route((*wheels[:k], wheel.moved(shift), *wheels[k + 1 :]), pitch, down).links
+                for shift in (-small, small)
+            ]
+            slope[k] = (ends[1] - ends[0]) * pitch / (2.0 * small)
+    return slope
+
+
+def _lay_taut(path: Route, n_links: int, walk: _Walk) -> _Walk:
+    """Close the last strand straight, stretching all strands alike where the loop is short."""
+    pitch = path.pitch
+    missing = walk.gap / pitch - walk.links_left
+    if missing > 1e-9:
+        widest = pitch * (1.0 + LARGEST_STRETCH)
+
+        def excess(spacing: float) -> float:
+            trial = _walk(path, n_links, 0, spacing)
+            return trial.gap - trial.links_left * spacing
+
+        if walk.links_left < 1 or excess(widest) > 0.0:
+            short = max(1, math.ceil(missing - 1e-9))
+            raise LayoutError(
+                f"chain too short by {short} link{'s' * (short > 1)}: {n_links} links, the taut "
+                f"loop between these axles needs {path.links:.2f}"
+            )
+        walk = _walk(path, n_links, 0, float(brentq(excess, pitch, widest, xtol=1e-16)))
+    return _close(walk, path, 0, _between(walk.last, walk.first, walk.links_left))
+
+
+def _lay_slack(path: Route, n_links: int, down: tuple[float, float]) -> _Walk:
+    """Let the surplus bow out under the lowest wheel, or in the lowest strand."""
+    k = _lowest_wheel(path, down)
+    if k is not None:
+        walk = _walk(path, n_links, k, path.pitch, in_wrap=True)
+        bow = bow_out(walk.last, walk.first, walk.links_left, path.pitch, down)
+        seats = [k if _is_seated(path, k, walk.seat_angle[k], pin) else -1 for pin in bow]
+        last = k if _is_seated(path, k, walk.seat_angle[k], walk.last) else -1
+        return walk._replace(pin=walk.pin + list(bow), seat=walk.seat[:-1] + [last] + seats)
+    middle = 0.5 * (path.start + path.end) @ np.array(down)
+    k = (int(np.argmax(middle)) + 1) % len(path.wheels)
+    walk = _walk(path, n_links, k, path.pitch)
+    return _close(walk, path, k, bow_out(walk.last, walk.first, walk.links_left, path.pitch, down))
+
+
+def _lay_hanging(path: Route, n_links: int, down: tuple[float, float]) -> _Walk:
+    """Hang the loop of a single wheel from the pins on its upper half."""
+    walk = _walk(path, n_links, 0, path.pitch)
+    apart = walk.gap / path.pitch
+    if walk.links_left < apart:
+        short = math.ceil(apart - walk.links_left)
+        raise LayoutError(f"chain too short by {short} links to hang round its sprocket")
+    return _close(walk, path, 0, bow_out(walk.last, walk.first, walk.links_left, path.pitch, down))
+
+
+def _lowest_wheel(path: Route, down: tuple[float, float]) -> int | None:
+    """Return the inside wheel under which surplus chain hangs, or None (dimensionless)."""
+    depth = [np.array(wheel.center) @ np.array(down) + wheel.radius for wheel in path.wheels]
+    k = int(np.argmax(depth))
+    if path.wheels[k].side != 1 or path.wrap[k] < 0.5 * math.pi:
+        return None
+    middle = path.wrap_in[k] + 0.5 * path.wrap[k]
+    drop = math.cos(middle) * down[0] + math.sin(middle) * down[1]
+    return k if drop >= HANGING else None
+
+
+def _is_seated(path: Route, k: int, seat_angle: float, pin: np.ndarray) -> bool:
+    wheel = path.wheels[k]
+    offset = pin - np.array(wheel.center)
+    step = wheel.seat_step(path.pitch)
+    away = math.remainder(wheel.side * math.atan2(offset[1], offset[0]) - seat_angle, step)
+    radial = float(np.hypot(*offset)) - wheel.radius
+    return math.hypot(radial, wheel.radius * away) < SEATED * path.pitch
+
+
+def _close(walk: _Walk, path: Route, reference: int, inner: np.ndarray) -> _Walk:
+    """Add the pins of the closing stretch and those of the wrap of the reference wheel."""
+    wheel = path.wheels[reference]
+    leaving = walk.seat_angle[reference]
+    entry, held = _entry_place(path, reference, leaving, wheel.seat_step(path.pitch))
+    step = wheel.seat_step(path.pitch)
+    wrap = [_on_wheel(wheel, entry + step * i) for i in range(held)]
+    return walk._replace(
+        pin=walk.pin + list(inner) + wrap,
+        seat=walk.seat + [-1] * len(inner) + [reference] * len(wrap),
+    )
+
+
+def _number_pins(path: Route, walk: _Walk, travel: np.ndarray, surplus: float) -> Laid:
+    """Start the count at the pin of the first wheel that is nearest its exit."""
+    pin, seat = np.array(walk.pin), np.array(walk.seat)
+    on_first = np.flatnonzero(seat == 0)
+    if on_first.size == 0:
+        on_first = np.arange(len(pin))
+    exit_point = path.start[0]
+    shift = on_first[int(np.argmin(np.linalg.norm(pin[on_first] - exit_point, axis=1)))]
+    angle = np.zeros(len(path.wheels))
+    for k, wheel in enumerate(path.wheels):
+        wanted = wheel.phase or 0.0
+        known = wheel.side * walk.seat_angle[k]
+        step = wheel.seat_step(path.pitch) if wheel.teeth else 2.0 * math.pi
+        angle[k] = wanted + math.remainder(known - wanted, step)
+    return Laid(
+        pin=np.ascontiguousarray(np.roll(pin, -shift, axis=0)),
+        wheel_angle=angle,
+        seat=np.roll(seat, -shift),
+        wheel_center=np.array([wheel.center for wheel in path.wheels], dtype=float),
+        travel=travel,
+        surplus=surplus,
+    )

@@ -1,0 +1,323 @@
+"""From a plan file to a `Plan`, all faults at once with file, line, key, value and rule."""
+
+from __future__ import annotations
+
+import difflib
+import re
+import tomllib
+from collections.abc import Mapping
+from pathlib import Path
+from typing import Any
+
+from chainsim.errors import CallError, Problem, ScenarioError
+from chainsim.study.axis_reading import read_axis
+from chainsim.study.plan import (
+    ENGINE_KINDS,
+    PLAN_FORMAT,
+    SAMPLE_KINDS,
+    EngineChoice,
+    Keep,
+    Plan,
+    Sample,
+)
+
+_TABLE = re.compile(r"\s*\[+\s*([^\]]+?)\s*\]+\s*(#.*)?")
+_KEY = re.compile(r"\s*(?:\"([^\"]+)\"|'([^']+)'|([A-Za-z0-9_.\-]+))\s*=")
+_TOP = (
+    "format", "title", "scenario", "seed", "set", "axis", "sample", "keep", "engine",
+)  # fmt: skip
+
+
+class Faults:
+    """Collects the faults of one plan, each with the line on which it stands.
+
+    Parameters
+    ----------
+    file : str
+        Name of the plan file.
+    text : str
+        Its text.
+    """
+
+    def __init__(self, file: str, text: str) -> None:
+        self.file = file
+        self.problems: list[Problem] = []
+        self.lines = key_lines(text)
+
+    def add(self, key: str, found: Any, rule: str) -> None:
+        """Note one fault.
+
+        Parameters
+        ----------
+        key : str
+            Dotted key; an array of tables is numbered from 1 (``axis.2.values``).
+        found : object
+            The value found; None where the key is missing.
+        rule : str
+            What is needed instead.
+        """
+        shown = "" if found is None else repr(found)
+        self.problems.append(Problem(self.file, self.line(key), key, shown, rule))
+
+    def line(self, key: str) -> int | None:
+        """Line of a key, or of the nearest table around it.
+
+        Parameters
+        ----------
+        key : str
+            Dotted key.
+
+        Returns
+        -------
+        int or None
+            Line number from 1 (dimensionless); None where nothing around it has a line.
+        """
+        while key:
+            if key in self.lines:
+                return self.lines[key]
+            key = key.rpartition(".")[0]
+        return None
+
+    def unknown(self, where: str, table: Mapping[str, Any], known: tuple[str, ...]) -> None:
+        """Note every key of a table that is not known, with the nearest one that is.
+
+        Parameters
+        ----------
+        where : str
+            Dotted key of the table; empty for the top.
+        table : mapping
+            The table.
+        known : tuple of str
+            Keys that may stand in it.
+        """
+        for key in table:
+            if key not in known:
+                near = difflib.get_close_matches(key, known, 1)
+                hint = f"did you mean {near[0]!r}?" if near else f"known are {', '.join(known)}"
+                self.add(f"{where}.{key}".lstrip("."), table[key], f"unknown key; {hint}")
+
+
+def key_lines(text: str) -> dict[str, int]:
+    """Line of every table and key in a TOML text.
+
+    Parameters
+    ----------
+    text : str
+        TOML that has been read without a syntax error.
+
+    Returns
+    -------
+    dict of str to int
+        Line from 1 (dimensionless) by dotted key; arrays of tables are numbered from 1.
+        Keys inside an inline table are found on the line of the table.
+    """
+    lines: dict[str, int] = {}
+    counts: dict[str, int] = {}
+    table = ""
+    for number, line in enumerate(text.splitlines(), 1):
+        if header := _TABLE.fullmatch(line):
+            table = header[1].strip()
+            if line.lstrip().startswith("[["):
+                parent, _, name = table.rpartition(".")
+                full = f"{parent}.{counts[parent]}.{name}" if parent in counts else table
+                counts[full] = counts.get(full, 0) + 1
+                counts[table] = counts[full]
+                table = f"{full}.{counts[full]}"
+            lines.setdefault(table, number)
+        elif key := _KEY.match(line):
+            name = key[1] or key[2] or key[3]
+            lines.setdefault(f"{table}.{name}".lstrip("."), number)
+    return lines
+
+
+def read_plan(path: str | Path) -> Plan:
+    """Read a plan file.
+
+    Parameters
+    ----------
+    path : str or Path
+        The plan file (TOML, UTF-8).
+
+    Returns
+    -------
+    Plan
+        The plan; its scenario files are not opened here.
+
+    Raises
+    ------
+    CallError
+        If the file cannot be read.
+    ScenarioError
+        If it is no valid plan; all faults at once.
+    """
+    path = Path(path)
+    try:
+        text = path.read_text(encoding="utf-8-sig")
+    except (OSError, UnicodeDecodeError) as error:
+        reason = getattr(error, "strerror", None) or "not UTF-8 text"
+        raise CallError(f"{path}: the plan cannot be read ({reason})") from None
+    return parse_plan(text, str(path), path.parent)
+
+
+def parse_plan(text: str, file: str = "<text>", folder: Path = Path()) -> Plan:
+    """Read a plan from text.
+
+    Parameters
+    ----------
+    text : str
+        TOML text.
+    file : str
+        Name for messages.
+    folder : Path
+        Folder from which the plan's paths are taken.
+
+    Returns
+    -------
+    Plan
+        The plan.
+
+    Raises
+    ------
+    ScenarioError
+        If it is no valid plan; all faults at once.
+    """
+    try:
+        data = tomllib.loads(text)
+    except tomllib.TOMLDecodeError as error:
+        match = re.search(r"\(at line (\d+)", str(error))
+        line = int(match[1]) if match else None
+        raise ScenarioError([Problem(file, line, "", "", f"not valid TOML: {error}")]) from None
+    faults = Faults(file, text)
+    faults.unknown("", data, _TOP)
+    if data.get("format") != PLAN_FORMAT:
+        faults.add(
+            "format", data.get("format"), f"this chainsim reads plans of format {PLAN_FORMAT}"
+        )
+    axes = _axes(data, faults)
+    plan = Plan(
+        file=file,
+        folder=folder,
+        title=_text(data, "title", Path(file).stem, faults),
+        scenario=_text(data, "scenario", None, faults),
+        axes=tuple(axes),
+        fixed=_mapping(data, "set", faults),
+        sample=_sample(data, axes, faults),
+        keep=_keep(data, faults),
+        engine=_engine(data, faults),
+        seed=_whole(data, "seed", None, 0, faults),
+        lines={axis.name: faults.line(f"axis.{i}") or 1 for i, axis in enumerate(axes, 1)},
+    )
+    if faults.problems:
+        raise ScenarioError(faults.problems)
+    return plan
+
+
+def _axes(data: dict[str, Any], faults: Faults) -> list[Any]:
+    tables = data.get("axis")
+    if not isinstance(tables, list) or not all(isinstance(table, dict) for table in tables):
+        faults.add("axis", tables, "a plan needs at least one [[axis]] table")
+        return []
+    axes = [read_axis(f"axis.{i}", table, faults) for i, table in enumerate(tables, 1)]
+    found = [axis for axis in axes if axis is not None]
+    names = [axis.name for axis in found]
+    for name in sorted({name for name in names if names.count(name) > 1}):
+        faults.add("axis", name, "two axes share this name; give one of them another `name`")
+    return found
+
+
+def _sample(data: dict[str, Any], axes: list[Any], faults: Faults) -> Sample:
+    table = _mapping(data, "sample", faults)
+    faults.unknown("sample", table, ("kind", "count"))
+    kind = table.get("kind", "grid")
+    if kind not in SAMPLE_KINDS:
+        faults.add("sample.kind", kind, f"one of {', '.join(SAMPLE_KINDS)}")
+        return Sample()
+    if kind == "grid":
+        for i, axis in enumerate(axes, 1):
+            if axis.choices is None:
+                faults.add(
+                    f"axis.{i}.distribution", axis.kind,
+                    'a distribution cannot be listed in a grid; add [sample] with kind = "sobol"',
+                )  # fmt: skip
+        return Sample()
+    count = _whole(table, "count", 0, 1, faults, "sample.")
+    if not count:
+        faults.add("sample.count", table.get("count"), "the number of points, at least 1")
+    elif kind in ("sobol", "indices") and count & (count - 1):
+        faults.add("sample.count", count, "a power of 2, so that the points stay balanced")
+    return Sample(kind, count or 0)
+
+
+def _keep(data: dict[str, Any], faults: Faults) -> Keep:
+    table = _mapping(data, "keep", faults)
+    faults.unknown("keep", table, ("findings", "summary", "trajectories"))
+    names = {}
+    for key in ("findings", "summary"):
+        value = table.get(key, [])
+        if value == "all":
+            value = []
+        if not isinstance(value, list) or not all(isinstance(name, str) for name in value):
+            faults.add(f"keep.{key}", value, 'a list of names, or "all"')
+            value = []
+        names[key] = tuple(value)
+    trajectories = table.get("trajectories", False)
+    if not isinstance(trajectories, bool):
+        faults.add("keep.trajectories", trajectories, "true or false")
+    return Keep(names["findings"], names["summary"], bool(trajectories))
+
+
+def _engine(data: dict[str, Any], faults: Faults) -> EngineChoice:
+    table = _mapping(data, "engine", faults)
+    known = ("kind", "workers", "address", "slurm", "wall_limit", "give_up_after")
+    faults.unknown("engine", table, known)
+    kind = table.get("kind", "processes")
+    if kind not in ENGINE_KINDS:
+        faults.add("engine.kind", kind, f"one of {', '.join(ENGINE_KINDS)}")
+    limit = table.get("wall_limit")
+    if limit is not None and (not isinstance(limit, int | float) or limit <= 0):
+        faults.add("engine.wall_limit", limit, "a number of seconds above zero")
+        limit = None
+    slurm = _mapping(table, "slurm", faults, "engine.") if "slurm" in table else None
+    faults.unknown("engine.slurm", slurm or {}, ("queue", "account", "walltime", "jobs", "memory"))
+    address = _text(table, "address", "", faults, "engine.") or None
+    if kind != "dask" and (address or slurm):
+        faults.add("engine.kind", kind, 'an address or a SLURM queue needs kind = "dask"')
+    return EngineChoice(
+        kind=kind,
+        workers=_whole(table, "workers", None, 1, faults, "engine."),
+        address=address,
+        slurm=slurm,
+        wall_limit=limit,
+        give_up_after=_whole(table, "give_up_after", 20, 1, faults, "engine.") or 20,
+    )
+
+
+def _text(
+    table: Mapping[str, Any], key: str, default: str | None, faults: Faults, where: str = ""
+) -> str:
+    value = table.get(key, default)
+    if not isinstance(value, str):
+        faults.add(where + key, value, "text in quotes is needed here")
+        return ""
+    return value
+
+
+def _mapping(table: Mapping[str, Any], key: str, faults: Faults, where: str = "") -> dict[str, Any]:
+    value = table.get(key, {})
+    if not isinstance(value, dict):
+        faults.add(where + key, value, "a table is needed here")
+        return {}
+    return value
+
+
+def _whole(
+    table: Mapping[str, Any], key: str, default: int | None, least: int, faults: Faults,
+    where: str = "",
+) -> int | None:  # fmt: skip
+    value = table.get(key, default)
+    if value is None:
+        return None
+    if isinstance(value, bool) or not isinstance(value, int) or value < least:
+        faults.add(where + key, value, f"a whole number, at least {least}")
+        return default
+    return value

@@ -1,0 +1,223 @@
+"""The embedded engine: worker processes of our own on this machine, one run each at a time."""
+
+from __future__ import annotations
+
+import contextlib
+import json
+import queue
+import signal
+import subprocess
+import sys
+import threading
+import time
+from collections import deque
+from collections.abc import Callable, Iterable, Iterator
+from typing import IO, Any
+
+from chainsim.errors import RunError
+from chainsim.study.jobs import NO_SPACE, Job, Outcome, failed_row, one_thread_each
+from chainsim.study.rows import DONE, FAILED
+from chainsim.study.store import DiskFull, Store
+
+TRIES = 2
+_TICK = 0.25  # longest silence between two reports to the caller [s]
+_IDLE_DEATHS = 3  # per worker, of processes that never took a job
+_FAREWELL = 2.0  # time a worker has to leave by itself before it is ended [s]
+
+
+class _Worker:
+    """A worker process and what it has in hand."""
+
+    def __init__(self, reports: queue.SimpleQueue[tuple[_Worker, Any]]) -> None:
+        self.job: Job | None = None
+        self.since = 0.0
+        self.too_long = False
+        # Its own process group: Ctrl-C reaches the driver alone, which then decides.
+        apart: dict[str, Any] = (
+            {"creationflags": subprocess.CREATE_NEW_PROCESS_GROUP}
+            if sys.platform == "win32"
+            else {"start_new_session": True}
+        )
+        with one_thread_each():
+            self.process = subprocess.Popen(
+                [sys.executable, "-m", "chainsim.study.worker"],
+                stdin=subprocess.PIPE,
+                stdout=subprocess.PIPE,
+                text=True,
+                encoding="utf-8",
+                **apart,
+            )
+        thread = threading.Thread(target=self._listen, args=(reports,), daemon=True)
+        thread.start()
+
+    def _listen(self, reports: queue.SimpleQueue[tuple[_Worker, Any]]) -> None:
+        """Pass on every answer, then None when the process is gone."""
+        answers: IO[str] | None = self.process.stdout
+        with contextlib.suppress(ValueError, OSError):
+            for line in answers or ():
+                reports.put((self, json.loads(line)))
+        self.process.wait()
+        reports.put((self, None))
+
+    def send(self, message: dict[str, Any]) -> None:
+        """Hand a message over; a worker that is gone reports that by itself."""
+        with contextlib.suppress(OSError, ValueError):
+            assert self.process.stdin is not None
+            self.process.stdin.write(json.dumps(message) + "\n")
+            self.process.stdin.flush()
+
+    def take(self, job: Job) -> None:
+        """Start a job."""
+        self.job, self.since = job, time.monotonic()
+        self.send({"job": job.to_data()})
+
+    def end(self, at_once: bool) -> None:
+        """End the process."""
+        with contextlib.suppress(OSError):
+            if at_once:
+                self.process.kill()
+            assert self.process.stdin is not None
+            self.process.stdin.close()
+        try:
+            self.process.wait(_FAREWELL)
+        except subprocess.TimeoutExpired:
+            self.process.kill()
+            self.process.wait()
+
+
+class ProcessEngine:
+    """Does runs in worker processes; survives the death of any of them.
+
+    Parameters
+    ----------
+    workers : int
+        Number of worker processes (dimensionless).
+    wall_limit : float or None
+        Longest time for one run [s]; a run that takes longer is ended and recorded as failed.
+    """
+
+    def __init__(self, workers: int, wall_limit: float | None = None) -> None:
+        self.workers = workers
+        self.wall_limit = wall_limit
+        self._reports: queue.SimpleQueue[tuple[_Worker, Any]] = queue.SimpleQueue()
+        self._team: list[_Worker] = []
+        self._again: deque[Job] = deque()
+        self._tries: dict[str, int] = {}
+        self._warm = False
+        self._idle_deaths = 0
+
+    @property
+    def processes(self) -> list[int]:
+        """Process ids of the workers at this moment (dimensionless)."""
+        return [worker.process.pid for worker in self._team]
+
+    def run(self, jobs: Iterable[Job], stopping: Callable[[], bool]) -> Iterator[Outcome | None]:
+        """Do jobs and yield their outcomes.
+
+        Parameters
+        ----------
+        jobs : iterable of Job
+            The jobs; taken one by one as workers become free.
+        stopping : callable
+            Turns true when no more jobs are to be taken.
+
+        Yields
+        ------
+        Outcome or None
+            An outcome; None at least four times a second.
+        """
+        waiting = iter(jobs)
+        try:
+            first = next(waiting, None)
+            if first is None:
+                return
+            self._again.append(first)
+            self._team = [_Worker(self._reports) for _ in range(self.workers)]
+            self._team[0].send({"warm": first.to_data()})
+            while True:
+                self._hand_out(waiting, stopping)
+                if self._warm and not any(worker.job for worker in self._team):
+                    return
+                yield self._report()
+        finally:
+            for worker in self._team:
+                worker.end(at_once=worker.job is not None)
+            self._team = []
+
+    def _hand_out(self, waiting: Iterator[Job], stopping: Callable[[], bool]) -> None:
+        """Give every idle worker a job, once the first of them has compiled what is needed."""
+        if not self._warm and not stopping():
+            return
+        self._warm = True
+        for worker in self._team:
+            if worker.job is None and not stopping():
+                job = self._again.popleft() if self._again else next(waiting, None)
+                if job is None:
+                    return
+                worker.take(job)
+
+    def _report(self) -> Outcome | None:
+        self._end_the_late()
+        try:
+            worker, answer = self._reports.get(timeout=_TICK)
+        except queue.Empty:
+            return None
+        if answer is None:
+            return self._buried(worker)
+        if "warm" in answer:
+            self._warm = True
+            return None
+        worker.job = None
+        return Outcome(**answer)
+
+    def _end_the_late(self) -> None:
+        if self.wall_limit is None:
+            return
+        for worker in self._team:
+            if worker.job is not None and time.monotonic() - worker.since > self.wall_limit:
+                worker.too_long = True
+                worker.process.kill()
+
+    def _buried(self, worker: _Worker) -> Outcome | None:
+        """Replace a worker that has died; its job is tried again or recorded as failed."""
+        if worker not in self._team:
+            return None
+        job = worker.job
+        self._team[self._team.index(worker)] = _Worker(self._reports)
+        self._warm = True  # if it died while compiling, the others compile for themselves
+        if job is None:
+            self._idle_deaths += 1
+            if self._idle_deaths > _IDLE_DEATHS * self.workers:
+                raise RunError("worker processes end as soon as they are started; see above")
+            return None
+        store = Store(job.folder)
+        row = store.read(job.id)
+        if row is not None and row.state == DONE:  # it died between writing and reporting
+            return Outcome(job.id, DONE)
+        if worker.too_long:
+            return self._failed(job, "too long", f"took longer than {self.wall_limit:g} s", 1)
+        tries = self._tries[job.id] = self._tries.get(job.id, 0) + 1
+        if tries < TRIES:
+            self._again.appendleft(job)
+            return None
+        how = _ending(worker.process.returncode)
+        return self._failed(job, "killed", f"its process {how}, {tries} times", tries)
+
+    def _failed(self, job: Job, code: str, text: str, tries: int) -> Outcome:
+        try:
+            Store(job.folder).write(failed_row(job, code, text, tries))
+        except DiskFull as error:
+            return Outcome(job.id, NO_SPACE, NO_SPACE, str(error))
+        return Outcome(job.id, FAILED, code, text)
+
+
+def _ending(code: int) -> str:
+    """How a process ended, in words."""
+    if code >= 0:
+        return f"ended by itself with status {code}"
+    try:
+        name = signal.Signals(-code).name
+    except ValueError:
+        name = str(-code)
+    hint = " (often: out of memory)" if name == "SIGKILL" else ""
+    return f"was ended by {name}{hint}"

@@ -1,0 +1,92 @@
+"""The task of a study: simulate one scenario and give its findings and summary."""
+
+from __future__ import annotations
+
+from dataclasses import asdict, is_dataclass
+from typing import Any
+
+from chainsim.study.jobs import Job, recording_path
+
+_GLANCE = "20 ms"  # of simulated time: enough to compile everything
+
+
+def simulate(job: Job) -> dict[str, Any]:
+    """Simulate the scenario of a job.
+
+    Parameters
+    ----------
+    job : Job
+        The run.
+
+    Returns
+    -------
+    dict
+        `findings`, `summary` and `stop_reason`.
+
+    Raises
+    ------
+    ChainsimError
+        If the scenario is refused or the run cannot be completed.
+    """
+    from chainsim.run import run
+
+    out = recording_path(job)
+    if out is not None:
+        out.parent.mkdir(parents=True, exist_ok=True)
+        out.unlink(missing_ok=True)
+    recording = run(scenario_of(job), out=out, keep="all" if out else "summary")
+    return result_of(recording)
+
+
+def warm(job: Job) -> None:
+    """Compile everything that a job needs by a glance at its scenario.
+
+    Parameters
+    ----------
+    job : Job
+        Any job of the sweep.
+    """
+    from chainsim.run import run
+
+    run(scenario_of(job).with_values({"run.duration": _GLANCE}), keep="summary")
+
+
+def scenario_of(job: Job) -> Any:
+    """Scenario of a job.
+
+    Parameters
+    ----------
+    job : Job
+        The run.
+
+    Returns
+    -------
+    Scenario
+        Its scenario with the job's values set.
+    """
+    from chainsim.scenario import parse_scenario
+
+    return parse_scenario(job.text, file=job.scenario).with_values(job.values)
+
+
+def result_of(recording: Any) -> dict[str, Any]:
+    """Findings and summary of a recording as plain data.
+
+    Parameters
+    ----------
+    recording : Recording
+        A finished run.
+
+    Returns
+    -------
+    dict
+        `findings` (list of dict), `summary` (dict) and `stop_reason` (str).
+    """
+    from chainsim.analysis import summary
+
+    findings = [asdict(f) if is_dataclass(f) else dict(f) for f in recording.findings]
+    return {
+        "findings": findings,
+        "summary": dict(summary(recording)),
+        "stop_reason": recording.stop_reason,
+    }

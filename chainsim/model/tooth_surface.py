@@ -224,7 +224,7 @@ def outline(tooth: ToothForm, arc_points: int = 12) -> np.ndarray:
     for k in range(tooth.teeth):
         pieces += [_turned(half, k * step), _turned(mirrored, (k + 1) * step)]
     points = np.vstack(pieces)
-    apart = np.linalg.norm(points - np.roll(points, 1, axis=0), axis=1)
+    apart = np.linalg.norm(points - np.roll(points, -1, axis=0), axis=1)
     return np.ascontiguousarray(points[apart > 1e-9 * tooth.pitch_radius])
 
 

@@ -10,6 +10,10 @@ from chainsim.errors import CallError
 HERTZ_DURATION = 2.943275184
 """`(4/5) √π Γ(2/5) / Γ(9/10)` (dimensionless): duration of a Hertz impact over δ/v."""
 
+_LOSS_OF_NEARLY_ALL = 38.0
+"""`D v` (dimensionless) from which on `D e v` is 1 within rounding: it is 1 − (1 + D v)
+exp(−1 − D v) there."""
+
 
 class Impact(NamedTuple):
     """A sphere that strikes a plane without loss.
@@ -146,6 +150,8 @@ def dashpot_damping_ratio(restitution: float) -> float:
 def depth_damping_restitution(damping: float, speed: float) -> float:
     """Restitution of a contact whose damping grows with its depth, against a wall.
 
+    Solved for `D e v`, which stays below 1.
+
     Parameters
     ----------
     damping : float
@@ -169,14 +175,14 @@ def depth_damping_restitution(damping: float, speed: float) -> float:
     product = damping * speed
     if product == 0.0:
         return 1.0
+    if product > _LOSS_OF_NEARLY_ALL:
+        return 1.0 / product
+    given = product - math.log1p(product)
 
-    def excess(restitution: float) -> float:
-        ratio = math.log1p(product) - math.log1p(-product * restitution)
-        return product * (1.0 + restitution) - ratio
+    def excess(returned: float) -> float:
+        return -returned - math.log1p(-returned) - given
 
-    # At e = 0 the excess is positive; it falls without bound where 1 − D e v reaches zero.
-    high = min(1.0, (1.0 - 1e-15) / product)
-    return float(brentq(excess, 0.0, high, xtol=1e-15, rtol=1e-14))
+    return float(brentq(excess, 0.0, 1.0 - 2.0**-53, xtol=1e-16, rtol=1e-14)) / product
 
 
 def depth_damping(restitution: float, speed: float) -> float:

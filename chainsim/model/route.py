@@ -19,6 +19,7 @@ from scipy.optimize import brentq
 from chainsim.errors import LayoutError
 from chainsim.model.bow import bow_out
 from chainsim.model.tangents import Route, Wheel, route
+from chainsim.model.walk import Walk, entry_place, evenly, on_wheel, walk_round
 
 __all__ = ["Laid", "Route", "Wheel", "lay_chain", "route"]
 
@@ -61,18 +62,6 @@ class Laid(NamedTuple):
     wheel_center: np.ndarray
     travel: np.ndarray
     surplus: float
-
-
-class _Walk(NamedTuple):
-    """Pins placed in order from the exit of the reference wheel round to its last known pin."""
-
-    pin: list[np.ndarray]
-    seat: list[int]
-    seat_angle: dict[int, float]
-    first: np.ndarray
-    last: np.ndarray
-    gap: float
-    links_left: int
 
 
 def lay_chain(
@@ -119,117 +108,11 @@ def lay_chain(
     path = route(wheels, pitch, down)
     if len(wheels) == 1:
         return _number_pins(path, _lay_hanging(path, n_links, down), travel, math.nan)
-    walk = _walk(path, n_links, 0, pitch)
+    walk = walk_round(path, n_links, 0, pitch)
     surplus = walk.links_left - walk.gap / pitch
     if movable or surplus <= 0.0:
         return _number_pins(path, _lay_taut(path, n_links, walk), travel, surplus)
     return _number_pins(path, _lay_slack(path, n_links, down), travel, surplus)
-
-
-def _walk(
-    path: Route, n_links: int, reference: int, spacing: float, in_wrap: bool = False
-) -> _Walk:
-    """Walk from the exit of the reference wheel round to where the loop has to close.
-
-    With `in_wrap` false that is the entry seat of the reference wheel, and the gap is the last
-    strand; with `in_wrap` true it is the pin that arrives at the reference wheel wherever it
-    comes to lie, and the gap is the wrap of that wheel.
-    """
-    count, wheel = len(path.wheels), path.wheels[reference]
-    step = wheel.seat_step(path.pitch)
-    leaving = _exit_place(path, reference, None)
-    seat_angle = {reference: leaving}
-    here = first = _on_wheel(wheel, leaving)
-    pins, seats, used = [here], [reference], 0
-    for hop in range(1, count + int(in_wrap)):
-        k = (reference + hop) % count
-        wheel = path.wheels[k]
-        links, arriving = _arrival(path, k, here, spacing)
-        stop = _on_wheel(wheel, arriving)
-        pins += list(_between(here, stop, links))
-        seats += [-1] * (links - 1)
-        used += links
-        here = stop
-        pins.append(here)
-        seats.append(k)
-        if k == reference:
-            break
-        seat_angle[k] = arriving
-        for angle in _wrap_places(path, k, arriving):
-            here = _on_wheel(wheel, angle)
-            pins.append(here)
-            seats.append(k)
-            used += 1
-    if not in_wrap:
-        entry_angle, held = _entry_place(path, reference, leaving, step)
-        first = _on_wheel(path.wheels[reference], entry_angle)
-        used += held
-    gap = float(np.linalg.norm(first - here))
-    return _Walk(pins, seats, seat_angle, first, here, gap, n_links - used)
-
-
-def _travel_angle(path: Route, k: int, entering: bool) -> float:
-    """Return the angle of entry, or of exit, growing in the direction of travel [rad]."""
-    start = path.wheels[k].side * path.wrap_in[k]
-    return float(start if entering else start + path.wrap[k])
-
-
-def _on_wheel(wheel: Wheel, travel_angle: float) -> np.ndarray:
-    """Return the place of a pin on a wheel [m]."""
-    angle = wheel.side * travel_angle
-    return np.array(wheel.center) + wheel.radius * np.array([math.cos(angle), math.sin(angle)])
-
-
-def _exit_place(path: Route, k: int, known_seat: float | None) -> float:
-    """Return the travel angle of the last seat that supports the leaving strand [rad]."""
-    wheel = path.wheels[k]
-    leaving = _travel_angle(path, k, entering=False)
-    if known_seat is None:
-        if wheel.phase is None:
-            return leaving
-        known_seat = wheel.side * wheel.phase
-    step = wheel.seat_step(path.pitch)
-    return known_seat + step * math.floor((leaving + 0.5 * step - known_seat) / step + 1e-9)
-
-
-def _wrap_places(path: Route, k: int, arriving: float) -> list[float]:
-    """Return the travel angles of the pins that follow the arriving one on a wheel [rad]."""
-    step = path.wheels[k].seat_step(path.pitch)
-    held = round((_exit_place(path, k, arriving) - arriving) / step)
-    return [arriving + step * i for i in range(1, held + 1)]
-
-
-def _entry_place(path: Route, k: int, leaving: float, step: float) -> tuple[float, int]:
-    """Return the travel angle of the first supporting seat [rad] and the links up to the exit."""
-    entering = _travel_angle(path, k, entering=True)
-    held = max(0, math.floor((leaving - entering + 0.5 * step) / step - 1e-9))
-    return leaving - held * step, held
-
-
-def _arrival(path: Route, k: int, here: np.ndarray, spacing: float) -> tuple[int, float]:
-    """Return links and travel angle [rad] of the pin that reaches wheel `k` from `here`.
-
-    The pin lies where the circle of a whole number of links about `here` cuts the pin circle of
-    the wheel, at the crossing nearest to the tangent point.
-    """
-    wheel = path.wheels[k]
-    entering = _travel_angle(path, k, entering=True)
-    links = max(1, round(float(np.linalg.norm(_on_wheel(wheel, entering) - here)) / spacing))
-    offset = here - np.array(wheel.center)
-    distance = float(np.hypot(*offset))
-    reach = links * spacing
-    cosine = (distance**2 + wheel.radius**2 - reach**2) / (2.0 * distance * wheel.radius)
-    spread = math.acos(min(1.0, max(-1.0, cosine)))
-    toward = wheel.side * math.atan2(offset[1], offset[0])
-    candidates = (toward + spread, toward - spread)
-    turns = [math.remainder(angle - entering, 2.0 * math.pi) for angle in candidates]
-    return links, entering + min(turns, key=abs)
-
-
-def _between(start: np.ndarray, end: np.ndarray, links: int) -> np.ndarray:
-    """Space the inner pins of a straight strand evenly: shape (links − 1, 2) [m]."""
-    share = np.arange(1, links)[:, None] / links
-    return start + share * (end - start)
 
 
 def _closing_travel(
@@ -244,7 +127,7 @@ def _closing_travel(
 
     def excess(shift: float) -> float:
         moved = tuple(w.moved(shift * part) for w, part in zip(wheels, share, strict=True))
-        walk = _walk(route(moved, pitch, down), n_links, 0, pitch)
+        walk = walk_round(route(moved, pitch, down), n_links, 0, pitch)
         return walk.gap - walk.links_left * pitch
 
     rate = float((slope * share).sum())
@@ -275,7 +158,7 @@ def _length_slopes(
     return slope
 
 
-def _lay_taut(path: Route, n_links: int, walk: _Walk) -> _Walk:
+def _lay_taut(path: Route, n_links: int, walk: Walk) -> Walk:
     """Close the last strand straight, stretching all strands alike where the loop is short."""
     pitch = path.pitch
     missing = walk.gap / pitch - walk.links_left
@@ -283,7 +166,7 @@ def _lay_taut(path: Route, n_links: int, walk: _Walk) -> _Walk:
         widest = pitch * (1.0 + LARGEST_STRETCH)
 
         def excess(spacing: float) -> float:
-            trial = _walk(path, n_links, 0, spacing)
+            trial = walk_round(path, n_links, 0, spacing)
             return trial.gap - trial.links_left * spacing
 
         if walk.links_left < 1 or excess(widest) > 0.0:
@@ -292,28 +175,28 @@ def _lay_taut(path: Route, n_links: int, walk: _Walk) -> _Walk:
                 f"chain too short by {short} link{'s' * (short > 1)}: {n_links} links, the taut "
                 f"loop between these axles needs {path.links:.2f}"
             )
-        walk = _walk(path, n_links, 0, float(brentq(excess, pitch, widest, xtol=1e-16)))
-    return _close(walk, path, 0, _between(walk.last, walk.first, walk.links_left))
+        walk = walk_round(path, n_links, 0, float(brentq(excess, pitch, widest, xtol=1e-16)))
+    return _close(walk, path, 0, evenly(walk.last, walk.first, walk.links_left))
 
 
-def _lay_slack(path: Route, n_links: int, down: tuple[float, float]) -> _Walk:
+def _lay_slack(path: Route, n_links: int, down: tuple[float, float]) -> Walk:
     """Let the surplus bow out under the lowest wheel, or in the lowest strand."""
     k = _lowest_wheel(path, down)
     if k is not None:
-        walk = _walk(path, n_links, k, path.pitch, in_wrap=True)
+        walk = walk_round(path, n_links, k, path.pitch, in_wrap=True)
         bow = bow_out(walk.last, walk.first, walk.links_left, path.pitch, down)
         seats = [k if _is_seated(path, k, walk.seat_angle[k], pin) else -1 for pin in bow]
         last = k if _is_seated(path, k, walk.seat_angle[k], walk.last) else -1
         return walk._replace(pin=walk.pin + list(bow), seat=walk.seat[:-1] + [last] + seats)
     middle = 0.5 * (path.start + path.end) @ np.array(down)
     k = (int(np.argmax(middle)) + 1) % len(path.wheels)
-    walk = _walk(path, n_links, k, path.pitch)
+    walk = walk_round(path, n_links, k, path.pitch)
     return _close(walk, path, k, bow_out(walk.last, walk.first, walk.links_left, path.pitch, down))
 
 
-def _lay_hanging(path: Route, n_links: int, down: tuple[float, float]) -> _Walk:
+def _lay_hanging(path: Route, n_links: int, down: tuple[float, float]) -> Walk:
     """Hang the loop of a single wheel from the pins on its upper half."""
-    walk = _walk(path, n_links, 0, path.pitch)
+    walk = walk_round(path, n_links, 0, path.pitch)
     apart = walk.gap / path.pitch
     if walk.links_left < apart:
         short = math.ceil(apart - walk.links_left)
@@ -341,20 +224,20 @@ def _is_seated(path: Route, k: int, seat_angle: float, pin: np.ndarray) -> bool:
     return math.hypot(radial, wheel.radius * away) < SEATED * path.pitch
 
 
-def _close(walk: _Walk, path: Route, reference: int, inner: np.ndarray) -> _Walk:
+def _close(walk: Walk, path: Route, reference: int, inner: np.ndarray) -> Walk:
     """Add the pins of the closing stretch and those of the wrap of the reference wheel."""
     wheel = path.wheels[reference]
     leaving = walk.seat_angle[reference]
-    entry, held = _entry_place(path, reference, leaving, wheel.seat_step(path.pitch))
+    entry, held = entry_place(path, reference, leaving)
     step = wheel.seat_step(path.pitch)
-    wrap = [_on_wheel(wheel, entry + step * i) for i in range(held)]
+    wrap = [on_wheel(wheel, entry + step * i) for i in range(held)]
     return walk._replace(
         pin=walk.pin + list(inner) + wrap,
         seat=walk.seat + [-1] * len(inner) + [reference] * len(wrap),
     )
 
 
-def _number_pins(path: Route, walk: _Walk, travel: np.ndarray, surplus: float) -> Laid:
+def _number_pins(path: Route, walk: Walk, travel: np.ndarray, surplus: float) -> Laid:
     """Start the count at the pin of the first wheel that is nearest its exit."""
     pin, seat = np.array(walk.pin), np.array(walk.seat)
     on_first = np.flatnonzero(seat == 0)

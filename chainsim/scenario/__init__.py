@@ -1,1 +1,11 @@
-"""."""
+"""Scenario files: text to checked values in SI.
+
+`read_scenario` and `parse_scenario` give a `Scenario`, frozen, with every value filled in and
+its origin; `json_schema` describes the format; `starter` writes a first file.
+"""
+
+from chainsim.scenario.complete import Origin
+from chainsim.scenario.read import parse_scenario, read_scenario
+from chainsim.scenario.scenario import Scenario
+
+__all__ = ["Origin", "Scenario", "parse_scenario", "read_scenario"]

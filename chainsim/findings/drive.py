@@ -1,0 +1,243 @@
+"""Findings about the drive: it copes, no mode sits on the tooth rate, the shaft does not whirl."""
+
+from __future__ import annotations
+
+import math
+from typing import Any
+
+import numpy as np
+
+from chainsim.analysis.drive import STALL_TIME as LONGEST_STAND
+from chainsim.analysis.drive import Duty, droop, duty, overrun, run_back, stall
+from chainsim.analysis.resonance import Nearness, nearness, string_frequency_of_run
+from chainsim.analysis.survey import Survey
+from chainsim.closed_forms import whirl_speed
+from chainsim.findings.finding import (
+    DOES_NOT_APPLY,
+    NOT_ENOUGH_DATA,
+    Finding,
+    Measure,
+    add_note,
+    judged,
+    unjudged,
+)
+from chainsim.findings.materials import SHAFT_MATERIALS
+from chainsim.findings.places import on_sprocket
+
+RUN_BACK_PITCHES = 1.0
+"""Run-back that counts as none [pitches]: backlash and the give of chain and shaft."""
+
+LISTED_MODES = 6
+"""Modes that are listed beside the judged ones [dimensionless]."""
+
+
+def drive_copes(s: Survey) -> Finding:
+    """Whether the drive keeps its speed and stays inside its rating.
+
+    Parameters
+    ----------
+    s : Survey
+        The recording.
+
+    Returns
+    -------
+    Finding
+        The least of: time at a stand under power, run-back after a stop, cut or reversal,
+        droop, peak torque, and root mean square torque of steady running against the
+        continuous rating. Torques are told at the driven sprocket.
+    """
+    load = duty(s)
+    measures = [_standing(s), *_torques(s, load), *_drooping(s), *_running_back(s)]
+    known = [measure for measure in measures if measure is not None]
+    return add_note(judged(known, s.scenario.limits.reserve), _duty_note(s, load))
+
+
+def _standing(s: Survey) -> Measure:
+    """Time that the drive stood under power."""
+    start, duration = stall(s)
+    said = s.rec.stop_reason if "stall" in s.rec.stop_reason else ""
+    return Measure(
+        what="longest stand under power",
+        value=duration,
+        unit="s",
+        limit=LONGEST_STAND,
+        time=start,
+        place=on_sprocket(s.scenario.drive.sprocket),
+        has_failed=duration > LONGEST_STAND or bool(said),
+    )
+
+
+def _torques(s: Survey, load: Duty) -> list[Measure]:
+    """Peak torque and heating torque against what the drive can give."""
+    place = on_sprocket(s.scenario.drive.sprocket)
+    most, lasting = _ratings(s)
+    peak = Measure(
+        what="peak torque", value=load.peak_torque, unit="N m", limit=most, time=load.peak_time,
+        place=place,
+    )  # fmt: skip
+    heating = Measure(
+        what="r.m.s. torque in steady running", value=load.rms_torque, unit="N m", limit=lasting,
+        place=place,
+    )  # fmt: skip
+    return [peak, heating] if math.isfinite(load.rms_torque) else [peak]
+
+
+def _ratings(s: Survey) -> tuple[float | None, float | None]:
+    """Largest and continuous torque at the driven sprocket [N m]; None where not stated."""
+    drive = s.scenario.drive
+    if drive.kind == "speed" or drive.motor is None:
+        return drive.max_torque, None
+    motor = drive.motor
+    gain = motor.gear_ratio * motor.gear_efficiency
+    most = motor.pull_out_torque if motor.stepper and motor.pull_out_torque else motor.stall_torque
+    lasting = motor.continuous_torque
+    return most * gain, None if lasting is None else lasting * gain
+
+
+def _drooping(s: Survey) -> list[Measure]:
+    """Loss of speed under load."""
+    lost = droop(s)
+    if lost is None:
+        return []
+    return [
+        Measure(
+            what="speed droop",
+            value=lost.share,
+            unit="1",
+            limit=s.scenario.limits.droop,
+            time=lost.time,
+            place=on_sprocket(s.scenario.drive.sprocket),
+        )
+    ]
+
+
+def _running_back(s: Survey) -> list[Measure]:
+    """Run-back, where there was anything to run back after."""
+    if overrun(s) is None and not run_back(s).cause:
+        return []
+    back = run_back(s)
+    cause = f" after {back.cause.replace('_', ' ')}" if back.cause else ""
+    return [
+        Measure(
+            what=f"run-back{cause}",
+            value=back.distance,
+            unit="m",
+            limit=RUN_BACK_PITCHES * s.pitch,
+            time=back.time,
+            place=on_sprocket(s.scenario.drive.sprocket),
+        )
+    ]
+
+
+def _duty_note(s: Survey, load: Duty) -> str:
+    """Power and current of steady running, overrun after a stop."""
+    notes = []
+    if math.isfinite(load.mean_power):
+        notes.append(f"mean power {load.mean_power:.3g} W")
+    current = s.channel("drive/current")
+    if current is not None and np.isfinite(current).any():
+        notes.append(f"peak current {float(np.nanmax(np.abs(current))):.3g} A")
+    ran_on = overrun(s)
+    if ran_on is not None:
+        after = ran_on.cause.replace("_", " ")
+        notes.append(f"ran on {1e3 * ran_on.distance:.0f} mm after {after}")
+    return "; ".join(notes)
+
+
+def off_resonance(s: Survey) -> Finding:
+    """Whether the take-up's modes and each strand's first keep away from the tooth rate.
+
+    Parameters
+    ----------
+    s : Survey
+        The recording.
+
+    Returns
+    -------
+    Finding
+        Value: smallest distance ``|f − excitation|/excitation`` [dimensionless], with the
+        excitation at the tooth rate, for strands also at half of it; limit: the guard band.
+        Of a strand the nearer of its frequencies at rest and running counts.
+    """
+    near = nearness(s)
+    if not near:
+        known = "no natural frequencies are known" if s.steady else "nothing ran steadily"
+        return unjudged(NOT_ENOUGH_DATA, known)
+    measures = [_near_measure(s, item) for item in near if item.mode.is_judged]
+    listed = [item for item in near if not item.mode.is_judged][:LISTED_MODES]
+    notes = [f"tooth rate {s.tooth_rate:.3g} Hz"]
+    if near and listed:
+        others = ", ".join(_told_mode(item) for item in listed)
+        notes.append(f"not judged, nearest first: {others}")
+    notes += _string_notes(s)
+    if not measures:
+        return unjudged(DOES_NOT_APPLY, "; ".join(["no take-up and no strand mode", *notes]))
+    return judged(measures, s.scenario.limits.reserve, "; ".join(notes))
+
+
+def _near_measure(s: Survey, item: Nearness) -> Measure:
+    """Distance of one judged mode from one excitation."""
+    return Measure(
+        what=f"{_told_mode(item)} against {'half the' if item.is_half else 'the'} tooth rate",
+        value=item.distance,
+        unit="1",
+        limit=s.scenario.limits.guard_band,
+        is_floor=True,
+        place=item.mode.kind,
+    )
+
+
+def _told_mode(item: Nearness) -> str:
+    """A mode with its frequencies in words."""
+    mode = item.mode
+    running = "" if mode.running == mode.frequency else f" ({mode.running:.3g} Hz running)"
+    return f"{mode.kind} {mode.frequency:.3g} Hz{running}"
+
+
+def _string_notes(s: Survey) -> list[str]:
+    """First frequency of each carrying strand as a loaded string, beside the eigenvalues."""
+    notes = []
+    for k in s.carrying:
+        frequency = string_frequency_of_run(s, k)
+        if math.isfinite(frequency):
+            name = s.strands[k].name
+            notes.append(f"strand {name} with its balls, as a string: {frequency:.3g} Hz")
+    return notes
+
+
+def shaft_below_whirl(s: Survey) -> Finding:
+    """Whether the drive shaft runs well below its first critical speed.
+
+    Parameters
+    ----------
+    s : Survey
+        The recording.
+
+    Returns
+    -------
+    Finding
+        Value: fastest running speed of the shaft [rad s-1]; limit: the first critical speed of
+        its longest span, less the guard band. A closed form; nothing of it is simulated.
+    """
+    shaft: Any = s.scenario.drive.shaft
+    if shaft is None or shaft.length is None or shaft.diameter is None:
+        return unjudged(DOES_NOT_APPLY, "no shaft with length and diameter is stated")
+    material = SHAFT_MATERIALS[shaft.material or "steel"]
+    span = shaft.length / (shaft.supports - 1)
+    critical = whirl_speed(shaft.diameter, span, material.modulus, material.density)
+    driven = s.sprocket_names.index(s.scenario.drive.sprocket)
+    rate = np.abs(np.asarray(s.rec["sprockets/rate"])[:, driven])
+    at = int(np.argmax(rate))
+    measure = Measure(
+        what="shaft speed",
+        value=float(rate[at]),
+        unit="rad s-1",
+        limit=critical * (1.0 - s.scenario.limits.guard_band),
+        time=float(s.time[at]),
+        place=f"span of {span:.2f} m between {shaft.supports} supports",
+    )
+    note = (
+        f"closed form for a straight, balanced {shaft.material or 'steel'} shaft on pinned "
+        f"supports, not simulated; first critical speed {60 * critical / (2 * math.pi):.0f} rev/min"
+    )
+    return judged([measure], s.scenario.limits.reserve, note)

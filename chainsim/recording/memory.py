@@ -107,5 +107,5 @@ class MemoryRecorder(Recorder):
     def _store_table(self, name: str, columns: dict[str, np.ndarray | Choice]) -> None:
         self._store.tables[name] = columns
 
-    def _set_attributes(self, attributes: dict[str, Any]) -> None:
+    def _end(self, attributes: dict[str, Any]) -> None:
         self._store.root |= attributes

@@ -7,8 +7,6 @@ from datetime import UTC, datetime
 from importlib.metadata import PackageNotFoundError, version
 from typing import Any
 
-import numpy as np
-
 import chainsim
 
 FORMAT = "chainsim-recording"
@@ -35,7 +33,7 @@ def root_attributes(scenario: Any) -> dict[str, Any]:
         "Conventions": CONVENTIONS,
         "format": FORMAT,
         "format_version": FORMAT_VERSION,
-        "complete": np.bool_(False),
+        "complete": False,
         "stop_reason": NOT_FINISHED,
         "title": getattr(scenario, "title", "") or "",
         "stem": scenario.stem,

@@ -27,7 +27,7 @@ if TYPE_CHECKING:
 class Recorder(ABC):
     """Takes a run block by block and gives a `Recording`.
 
-    Subclasses store arrays: `_start`, `_store_static`, `_push`, `_store_table`, `_set_attributes`.
+    Subclasses store arrays: `_start`, `_store_static`, `_push`, `_store_table`, `_end`.
 
     Parameters
     ----------
@@ -41,6 +41,7 @@ class Recorder(ABC):
             raise RecordingError(f"keep is '{keep}'; it is 'all', 'summary' or a list of channels")
         self._keep: str | tuple[str, ...] = keep if isinstance(keep, str) else tuple(keep)
         self._shapes: dict[str, tuple[int, ...]] = {}
+        self._names: dict[str, int] = {}
 
     def begin(self, scenario: Any, geometry: Mapping[str, Any], static: Static) -> None:
         """Store what is known before the first sample.
@@ -63,6 +64,7 @@ class Recorder(ABC):
         attributes = root_attributes(scenario)
         attributes |= {"kept": self._keep if isinstance(self._keep, str) else list(self._keep)}
         self._start(attributes | dict(static.attributes), scenario, scenario_texts(scenario))
+        self._names = {"sprocket": len(static.sprockets), "strand": len(static.strands)}
         self._store_static(static, shapes)
         self._store_table("geometry/strands", to_columns("geometry/strands", static.strands))
 
@@ -80,10 +82,15 @@ class Recorder(ABC):
             If a channel is unknown or missing, or its shape changed.
         """
         values = {TIME.path: np.asarray(block.time)}
-        values |= {path: block.channels[path] for path in block.channels if self._keeps(path)}
+        values |= {
+            path: array
+            for path, array in block.channels.items()
+            if is_kept(path, self._keep) and 0 not in array.shape[1:]
+        }
         shapes = {path: array.shape[1:] for path, array in values.items()}
         if not self._shapes:
-            self._shapes = {channel(path).path: found for path, found in shapes.items()}
+            _check_axes(shapes, self._names)
+            self._shapes = shapes
         if shapes != self._shapes or any(len(a) != len(block.time) for a in values.values()):
             raise RecordingError(f"a block differs from the first one: {self._difference(shapes)}")
         if len(block.time):
@@ -120,8 +127,8 @@ class Recorder(ABC):
             ("modes", modes),
         ):
             self._store_table(name, to_columns(name, rows))
-        end = {"complete": np.bool_(ending.complete), "stop_reason": ending.stop_reason}
-        self._set_attributes(end | dict(attributes or {}))
+        end = {"complete": bool(ending.complete), "stop_reason": ending.stop_reason}
+        self._end(end | dict(attributes or {}))
         self.flush()
 
     def add_findings(self, findings: Iterable[Any]) -> None:
@@ -142,9 +149,6 @@ class Recorder(ABC):
     @abstractmethod
     def close(self) -> Path | None:
         """Complete the recording; return the path of its file, None in memory."""
-
-    def _keeps(self, path: str) -> bool:
-        return is_kept(path, self._keep)
 
     def _difference(self, shapes: dict[str, tuple[int, ...]]) -> str:
         for path in sorted(shapes.keys() ^ self._shapes.keys()):
@@ -167,4 +171,18 @@ class Recorder(ABC):
     def _store_table(self, name: str, columns: dict[str, np.ndarray | Choice]) -> None: ...
 
     @abstractmethod
-    def _set_attributes(self, attributes: dict[str, Any]) -> None: ...
+    def _end(self, attributes: dict[str, Any]) -> None: ...
+
+
+def _check_axes(shapes: Mapping[str, tuple[int, ...]], names: Mapping[str, int]) -> None:
+    """Raise RecordingError unless every axis has one length wherever it occurs."""
+    lengths = dict(names)
+    for path, found in shapes.items():
+        dims = channel(path).dims
+        if len(dims) != len(found):
+            raise RecordingError(f"channel '{path}' has shape {found} per sample, not {dims}")
+        for dim, length in zip(dims, found, strict=True):
+            if lengths.setdefault(dim, length) != length:
+                raise RecordingError(
+                    f"channel '{path}' has {length} places along '{dim}', not {lengths[dim]}"
+                )

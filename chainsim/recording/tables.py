@@ -215,6 +215,7 @@ def _column(column: Column, values: list[Any]) -> np.ndarray | Choice:
     texts = ["" if value is None else str(value) for value in values]
     if column.kind == "text":
         return np.array(texts, dtype=object)
+    texts = [text or "unknown" for text in texts]
     known = tuple(dict.fromkeys([*column.texts, *texts]))
     codes = {text: code for code, text in enumerate(known)}
     return Choice(np.array([codes[text] for text in texts], dtype="i2"), known)

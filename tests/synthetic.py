@@ -16,6 +16,7 @@ from chainsim.recording.memory import MemoryRecorder
 from chainsim.recording.recorder import Recorder
 from chainsim.recording.recording import Recording
 from chainsim.recording.rows import ModeRow, Static, StrandRow
+from chainsim.scenario import parse_scenario
 
 GRAVITY = 9.80665
 PITCH, TEETH, BALL_RADIUS, BALL_MASS = 0.010, 8, 0.008, 0.0168
@@ -132,7 +133,7 @@ def synthetic_recording(
     )
     attributes = {"seed": seed, "sample_rate": rate}
     static = Static(("head", "tail"), strands, attributes)
-    recorder.begin(_scenario(text), _geometry(links, height), static)
+    recorder.begin(parse_scenario(text, file="synthetic.toml"), _geometry(links, height), static)
     for start in range(0, len(time), BLOCK_SAMPLES):
         window = slice(start, start + BLOCK_SAMPLES)
         recorder.append(Block(time[window], {k: v[window] for k, v in channels.items()}))
@@ -149,23 +150,6 @@ def synthetic_recording(
         {"situations_run": ["start empty", "steady"], "situations_not_run": ["stop", "jam"]},
     )
     return recorder.recording()
-
-
-def _scenario(text):
-    try:
-        from chainsim.scenario import parse_scenario
-    except ImportError:  # until the scenario package is whole
-        from types import SimpleNamespace
-
-        return SimpleNamespace(
-            text=text,
-            title="Synthetic lift",
-            stem="synthetic",
-            sha256="0" * 64,
-            resolved_toml=lambda: text,
-            resolved_json=lambda: "{}",
-        )
-    return parse_scenario(text, file="synthetic.toml")
 
 
 def _travel(time: np.ndarray, speed: float) -> tuple[np.ndarray, np.ndarray]:

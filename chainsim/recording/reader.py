@@ -153,7 +153,7 @@ class FileStore:
         texts = self.texts()
         if "resolved" not in texts:
             raise RecordingError(f"{self._place}: is damaged: it holds no scenario")
-        return parse_scenario(texts["resolved"], file=self._place.name)
+        return parse_scenario(texts["resolved"], file=f"{self.attributes().get('stem')}.toml")
 
     @property
     def _file(self) -> h5py.File:

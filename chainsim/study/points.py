@@ -237,11 +237,17 @@ def _point(plan: Plan, index: int, choices: tuple[Choice, ...], scenarios: BaseS
             plan.seed if plan.sample.kind == "grid" else point_seed(plan.seed, index)
         )
     labels = {axis.name: c.label for axis, c in zip(plan.axes, choices, strict=True)}
-    return make_point(index, labels, values, name, scenarios[name])
+    base = scenarios[name]
+    return make_point(index, labels, values, name, base, base.text)
 
 
 def make_point(
-    index: int, labels: Mapping[str, str], values: Mapping[str, Any], name: str, base: Any
+    index: int,
+    labels: Mapping[str, str],
+    values: Mapping[str, Any],
+    name: str,
+    base: Any,
+    text: str,
 ) -> Point:
     """Point from a base scenario and the values to set in it.
 
@@ -257,6 +263,8 @@ def make_point(
         Name of the scenario for messages.
     base : Scenario
         The scenario before they are set.
+    text : str
+        Text from which a worker reads that scenario.
 
     Returns
     -------
@@ -268,5 +276,5 @@ def make_point(
         resolved = base.with_values(values).resolved_json()
     except ChainsimError as error:
         refusal = str(error)
-        resolved = json.dumps({"refused": dict(values), "text": base.text}, default=str)
-    return Point(index, run_id(resolved), labels, dict(values), name, base.text, refusal)
+        resolved = json.dumps({"refused": dict(values), "text": text}, default=str)
+    return Point(index, run_id(resolved), labels, dict(values), name, text, refusal)

@@ -94,10 +94,13 @@ class ProcessEngine:
         Number of worker processes (dimensionless).
     wall_limit : float or None
         Longest time for one run [s]; a run that takes longer is ended and recorded as failed.
+    stay : bool
+        True where the workers stay from one `run` to the next, until `close`.
     """
 
-    def __init__(self, workers: int, wall_limit: float | None = None) -> None:
+    def __init__(self, workers: int, wall_limit: float | None = None, stay: bool = False) -> None:
         self.workers = workers
+        self._stay = stay
         self.wall_limit = wall_limit
         self._reports: queue.SimpleQueue[tuple[_Worker, Any]] = queue.SimpleQueue()
         self._team: list[_Worker] = []
@@ -132,17 +135,24 @@ class ProcessEngine:
             if first is None:
                 return
             self._again.append(first)
-            self._team = [_Worker(self._reports) for _ in range(self.workers)]
-            self._team[0].send({"warm": first.to_data()})
+            if not self._team:
+                self._warm = False
+                self._team = [_Worker(self._reports) for _ in range(self.workers)]
+                self._team[0].send({"warm": first.to_data()})
             while True:
                 self._hand_out(waiting, stopping)
                 if self._warm and not any(worker.job for worker in self._team):
                     return
                 yield self._report()
         finally:
-            for worker in self._team:
-                worker.end(at_once=worker.job is not None)
-            self._team = []
+            if not self._stay or any(worker.job for worker in self._team):
+                self.close()
+
+    def close(self) -> None:
+        """End all workers, those at once that are still at work."""
+        for worker in self._team:
+            worker.end(at_once=worker.job is not None)
+        self._team = []
 
     def _hand_out(self, waiting: Iterator[Job], stopping: Callable[[], bool]) -> None:
         """Give every idle worker a job, once the first of them has compiled what is needed."""

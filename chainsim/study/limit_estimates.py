@@ -1,0 +1,160 @@
+"""Closed-form estimates that stand beside a limit found by simulation."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import Any
+
+from chainsim.closed_forms import growth_at_tip, least_hung_weight, least_lifting_force
+from chainsim.study.heights import height_of
+from chainsim.study.limit_questions import takeup_sprocket
+
+
+@dataclass(frozen=True)
+class Estimate:
+    """A closed-form estimate of a limit.
+
+    Attributes
+    ----------
+    value : float or None
+        The estimate [SI unit of the question]; None where there is no closed form.
+    text : str
+        What it is made of, or why there is none.
+    """
+
+    value: float | None
+    text: str
+
+
+def estimate(scenario: Any, name: str) -> Estimate:
+    """Closed-form estimate of a limit.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        The lift.
+    name : str
+        `takeup`, `speed`, `height`, `wear`, `slack` or a dotted key.
+
+    Returns
+    -------
+    Estimate
+        For a vertical lift on two sprockets; else there is none.
+    """
+    form = _FORMS.get(name)
+    if form is None:
+        return Estimate(None, "no closed form is known for this limit")
+    if len(scenario.sprocket) != 2 or scenario.frame.tilt or _leans(scenario):
+        return Estimate(None, "the closed form is that of a vertical lift on two sprockets")
+    return form(scenario)
+
+
+def carried_mass(scenario: Any, height: float | None = None) -> float:
+    """Mass of the balls on a filled carrying strand, on average.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        The lift.
+    height : float or None
+        Rise of the balls [m]; None takes that of the scenario.
+
+    Returns
+    -------
+    float
+        Mass [kg]; less where the feed fills only a part of the pockets.
+    """
+    balls, carriers = scenario.balls, scenario.carriers
+    if balls is None or carriers is None:
+        return 0.0
+    rise = balls.unload_at - balls.load_at if height is None else height
+    spacing = carriers.every * scenario.chain.pitch
+    pockets = rise / spacing
+    speed, feed = scenario.drive.chain_speed, balls.feed
+    fill = 1.0
+    if feed.kind != "every pocket" and feed.rate and speed:
+        fill = min(1.0, feed.rate * spacing / speed)
+    return pockets * fill * balls.mass
+
+
+def wrapped_mass(scenario: Any, sprocket: Any) -> float:
+    """Mass of the chain and carriers on half a turn of a sprocket.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        The lift.
+    sprocket : Sprocket
+        The sprocket.
+
+    Returns
+    -------
+    float
+        Mass [kg].
+    """
+    return 0.5 * sprocket.teeth * _mass_of_link(scenario)
+
+
+def _mass_of_link(scenario: Any) -> float:
+    """Mass of a link with its share of the carriers [kg]."""
+    carriers = scenario.carriers
+    share = carriers.mass / carriers.every if carriers is not None else 0.0
+    return scenario.chain.link_mass + share
+
+
+def _takeup(scenario: Any) -> Estimate:
+    sprocket = takeup_sprocket(scenario)
+    tail = _tail(scenario)
+    driven = "tail" if scenario.drive.sprocket == tail.name else "head"
+    payload = carried_mass(scenario)
+    moving = sprocket.mount.mass if sprocket.mount.kind in ("spring", "counterweight") else 0.0
+    wrap = wrapped_mass(scenario, sprocket)
+    if sprocket is tail:
+        hung = least_hung_weight(payload, driven)
+        text = "weight of all that hangs = weight of the balls on the carrying strand"
+        if driven == "head":
+            text = "driven at the head, any hung weight keeps the carrying strand taut"
+        pull = hung - wrap - moving
+    else:
+        strand = _mass_of_link(scenario) * height_of(scenario) / scenario.chain.pitch
+        pull = least_lifting_force(moving + wrap, strand, payload, driven)
+        text = "lifting force = head, both strands and balls"
+        if driven == "tail":
+            text += ", and the balls' weight once more"
+    factor = scenario.frame.gravity if sprocket.mount.kind == "spring" else 1.0
+    return Estimate(max(pull, 0.0) * factor, f"{text} (free body, standing still)")
+
+
+def _height(scenario: Any) -> Estimate:
+    tail = _tail(scenario)
+    if scenario.drive.sprocket != tail.name or tail.mount.kind not in ("hung", "sliding"):
+        return Estimate(None, "driven at the head, height does not enter the free body")
+    if scenario.carriers is None or scenario.carriers.at is not None:
+        return Estimate(None, "with a fixed number of balls, height does not enter the free body")
+    hung = tail.mount.mass + wrapped_mass(scenario, tail)
+    per_meter = carried_mass(scenario, 1.0)
+    if not per_meter:
+        return Estimate(None, "no balls are carried")
+    return Estimate(
+        hung / per_meter,
+        "height at which the balls on the carrying strand weigh as much as all that hangs "
+        "(free body, standing still)",
+    )
+
+
+def _wear(scenario: Any) -> Estimate:
+    teeth = max(sprocket.teeth for sprocket in scenario.sprocket)
+    return Estimate(growth_at_tip(teeth), f"a pin reaches the tip of a standard tooth, z = {teeth}")
+
+
+def _tail(scenario: Any) -> Any:
+    return min(scenario.sprocket, key=lambda sprocket: sprocket.center[1])
+
+
+def _leans(scenario: Any) -> bool:
+    (x0, y0), (x1, y1) = (sprocket.center for sprocket in scenario.sprocket)
+    return abs(math.atan2(x1 - x0, abs(y1 - y0))) > math.radians(2.0)
+
+
+_FORMS = {"takeup": _takeup, "height": _height, "wear": _wear}

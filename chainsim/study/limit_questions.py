@@ -1,0 +1,283 @@
+"""The questions of `chainsim limit`: what varies, over which range, and which way is harder."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from typing import Any
+
+from chainsim.errors import CallError
+from chainsim.scenario.table import Leaf, leaves
+from chainsim.study.heights import height_of, raised, raising_step
+from chainsim.units import format_si, to_si
+
+_TAKEUP_KEYS = {  # kind of mount -> key of the value that sets its pull
+    "hung": "mass",
+    "sliding": "mass",
+    "arm": "mass",
+    "counterweight": "weight",
+    "spring": "set_force",
+}
+_FIXED_KINDS = ("fixed", "screwed")
+_LARGEST_GROWTH = 0.05  # beyond any chain that still runs
+_MOST_SURPLUS = 6.0  # pitches of surplus chain at the far end of the scan
+
+
+@dataclass(frozen=True)
+class Question:
+    """What is searched.
+
+    Attributes
+    ----------
+    name : str
+        `takeup`, `speed`, `height`, `wear`, `slack`, or a dotted key.
+    title : str
+        What varies, in words.
+    unit_kind : str
+        Kind of unit of the value.
+    low, high : float
+        Range of the coarse scan [SI unit of the kind].
+    log : bool
+        True where the scan rises by equal ratios.
+    harder : int
+        -1 where a smaller value asks more of the lift, +1 where a larger one does
+        (dimensionless).
+    present : float
+        Value in the scenario [SI unit of the kind].
+    values : callable
+        Gives the scenario values, by dotted key, that make the value what it is.
+    step : float or None
+        Smallest change that makes sense [SI unit of the kind]; None for any.
+    least : float
+        Smallest possible value [SI unit of the kind].
+    """
+
+    name: str
+    title: str
+    unit_kind: str
+    low: float
+    high: float
+    log: bool
+    harder: int
+    present: float
+    values: Callable[[float], Mapping[str, Any]]
+    step: float | None = None
+    least: float = -math.inf
+
+    def snapped(self, value: float) -> float:
+        """Nearest value that can be had.
+
+        Parameters
+        ----------
+        value : float
+            Any value [SI unit of the kind].
+
+        Returns
+        -------
+        float
+            The value itself, or the nearest one whole steps away from the present value.
+        """
+        value = max(value, self.least)
+        if self.step is None:
+            return float(f"{value:.12g}")
+        steps = round((value - self.present) / self.step)
+        return self.present + steps * self.step
+
+    def shown(self, value: float) -> str:
+        """The value with a readable unit.
+
+        Parameters
+        ----------
+        value : float
+            A value [SI unit of the kind].
+
+        Returns
+        -------
+        str
+            Such as ``0.23 kg``.
+        """
+        return format_si(value, self.unit_kind)
+
+
+def question(scenario: Any, name: str, low: str | None = None, high: str | None = None) -> Question:
+    """Question of a name.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        The scenario from which the search starts.
+    name : str
+        `takeup`, `speed`, `height`, `wear`, `slack`, or any dotted key of a number.
+    low, high : str or None
+        Ends of the range to scan, with their unit; None takes a range that suits.
+
+    Returns
+    -------
+    Question
+        The question.
+
+    Raises
+    ------
+    CallError
+        If the question does not apply to this lift, or the range is no range.
+    """
+    asked = _BY_NAME.get(name, lambda lift: _any_key(lift, name))(scenario)
+    ends = {}
+    for end, text in (("low", low), ("high", high)):
+        if text is not None:
+            try:
+                ends[end] = to_si(text, asked.unit_kind)
+            except ValueError as error:
+                raise CallError(f"limit {name}: {end} end of the range: {error}") from None
+    asked = Question(**{**asked.__dict__, **ends})
+    if not asked.low < asked.high or (asked.log and asked.low <= 0):
+        raise CallError(f"limit {name}: the range must rise, and start above zero")
+    return asked
+
+
+def takeup_sprocket(scenario: Any) -> Any:
+    """Sprocket whose mount takes up the slack.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        The lift.
+
+    Returns
+    -------
+    Sprocket
+        The first one that can move.
+
+    Raises
+    ------
+    CallError
+        If none can.
+    """
+    for sprocket in scenario.sprocket:
+        if sprocket.mount.kind in _TAKEUP_KEYS:
+            return sprocket
+    raise CallError(
+        "limit takeup: every axle of this lift is fixed, so nothing takes up slack; "
+        "ask for `slack` instead"
+    )
+
+
+def _takeup(scenario: Any) -> Question:
+    sprocket = takeup_sprocket(scenario)
+    kind = _TAKEUP_KEYS[sprocket.mount.kind]
+    key = f"sprocket.{sprocket.name}.mount.{kind}"
+    present = getattr(sprocket.mount, kind)
+    if not present:
+        raise CallError(f"limit takeup: {key} is zero, so there is nothing to scan around")
+    return Question(
+        "takeup", f"take-up: {kind.replace('_', ' ')} at {sprocket.name}",
+        "force" if kind == "set_force" else "mass",
+        present / 16, present * 4, True, -1, present, lambda value: {key: value},
+    )  # fmt: skip
+
+
+def _speed(scenario: Any) -> Question:
+    if scenario.drive.kind != "speed":
+        raise CallError(
+            "limit speed: a motor finds its own speed; "
+            "ask for a key, such as drive.motor.gear_ratio"
+        )
+    present = scenario.drive.chain_speed
+    return Question(
+        "speed", "chain speed", "speed", present / 2, present * 8, True, +1, present,
+        lambda value: {"drive.chain_speed": value},
+    )  # fmt: skip
+
+
+def _height(scenario: Any) -> Question:
+    present, step, n_links = height_of(scenario), *raising_step(scenario)
+    least = present - step * math.floor(0.5 * present / step)
+    return Question(
+        "height", "height from the lowest to the highest axle", "length",
+        max(least, present - 2 * step), present + 6 * step * max(1, round(0.5 * present / step)),
+        False, +1, present, lambda value: raised(scenario, value - present, n_links), step, least,
+    )  # fmt: skip
+
+
+def _wear(scenario: Any) -> Question:
+    present = scenario.chain.growth
+    return Question(
+        "wear", "growth of the pitch by wear", "fraction", present, present + _LARGEST_GROWTH,
+        False, +1, present, lambda value: {"chain.growth": value}, None, present,
+    )  # fmt: skip
+
+
+def _slack(scenario: Any) -> Question:
+    from chainsim.model import build_lift
+
+    if any(sprocket.mount.kind not in _FIXED_KINDS for sprocket in scenario.sprocket):
+        raise CallError("limit slack: this lift takes up its own slack; ask for `takeup` instead")
+    tail = min(scenario.sprocket, key=lambda sprocket: sprocket.center[1])
+    x, y = tail.center
+    n_links = build_lift(scenario).n_links
+
+    def values(surplus: float) -> dict[str, Any]:
+        # The tail comes nearer by half the surplus, since both strands grow slack by it.
+        return {f"sprocket.{tail.name}.center": [x, y + 0.5 * surplus], "chain.links": n_links}
+
+    return Question(
+        "slack", "surplus chain", "length", 0.0, _MOST_SURPLUS * scenario.chain.pitch,
+        False, +1, 0.0, values, None, 0.0,
+    )  # fmt: skip
+
+
+def _any_key(scenario: Any, name: str) -> Question:
+    leaf = number_at(scenario, name)
+    present = float(leaf.value)
+    whole = isinstance(leaf.value, int)
+    low, high = (present / 4, present * 4) if present > 0 else (present - 1.0, present + 1.0)
+    return Question(
+        name, name, leaf.unit_kind or "fraction", max(1.0, low) if whole else low, high,
+        present > 0 and not whole, +1, present,
+        (lambda value: {name: round(value)}) if whole else (lambda value: {name: value}),
+        1.0 if whole else None,
+    )  # fmt: skip
+
+
+def number_at(scenario: Any, key: str) -> Leaf:
+    """Number of a scenario by its dotted key.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        The scenario.
+    key : str
+        Dotted key.
+
+    Returns
+    -------
+    Leaf
+        The value with its unit kind.
+
+    Raises
+    ------
+    CallError
+        If there is no number of that key; the nearest are offered.
+    """
+    import difflib
+
+    numbers = {
+        leaf.key: leaf
+        for leaf in leaves(scenario)
+        if isinstance(leaf.value, int | float) and not isinstance(leaf.value, bool)
+    }
+    if key not in numbers:
+        near = difflib.get_close_matches(key, [*numbers, *_BY_NAME], 3)
+        hint = f"did you mean {', '.join(near)}?" if near else f"or one of {', '.join(_BY_NAME)}"
+        raise CallError(f"{key!r} is no number of this scenario; {hint}")
+    return numbers[key]
+
+
+_BY_NAME: dict[str, Callable[[Any], Question]] = {
+    "takeup": _takeup,
+    "speed": _speed,
+    "height": _height,
+    "wear": _wear,
+    "slack": _slack,
+}

@@ -4,8 +4,9 @@
 its origin; `json_schema` describes the format; `starter` writes a first file.
 """
 
-from chainsim.scenario.complete import Origin
+from chainsim.scenario.filler import Origin
+from chainsim.scenario.json_schema import json_schema
 from chainsim.scenario.read import parse_scenario, read_scenario
 from chainsim.scenario.scenario import Scenario
 
-__all__ = ["Origin", "Scenario", "parse_scenario", "read_scenario"]
+__all__ = ["Origin", "Scenario", "json_schema", "parse_scenario", "read_scenario"]

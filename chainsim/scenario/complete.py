@@ -8,9 +8,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Mapping
-from copy import deepcopy
-from typing import Any, Literal, NamedTuple
+from typing import Any
 
+from chainsim.scenario.filler import Filled, Filler, Source
 from chainsim.scenario.kinds import (
     KIND_ASSUMED_WITHOUT_ONE,
     KINDS_OF_CHAIN,
@@ -20,13 +20,9 @@ from chainsim.scenario.kinds import (
     ball_mass,
     chain_properties,
 )
-from chainsim.scenario.quantity import SI
 from chainsim.scenario.schema import Document
 from chainsim.scenario.schema_balls import Balls, Pocket
 from chainsim.scenario.schema_drive import Motor
-
-Source = Literal["given", "kind", "assumed", "bench"]
-Path = tuple[str | int, ...]
 
 DEFAULT_BALL_RATE = 1.0  # 1/s, common practice on a shared exhibit, no source
 OFFSET_OVER_PITCH = Range(0.3, 0.4, 0.6)
@@ -36,69 +32,6 @@ BALL_OVER_PITCH = 1.6  # size a pocket is made for where no ball is described
 COUPLING_STIFFNESS = Range(5.0, 20.0, 100.0)  # N m/rad
 NO_LOAD_OVER_STALL_CURRENT = Range(0.04, 0.08, 0.15)
 RUNNING_OVER_NO_LOAD_SPEED = 0.8
-
-
-class Origin(NamedTuple):
-    """Where a value came from, and what else it may be.
-
-    Attributes
-    ----------
-    source : str
-        `given` in the file, from the `kind` of chain or material, `assumed`, or from the
-        `bench`.
-    low, typical, high : float or None
-        Range of the value [SI]; None where the value is no number.
-    note : str
-        What it was taken from or worked out by; empty for a value given in the file.
-    """
-
-    source: Source
-    low: float | None = None
-    typical: float | None = None
-    high: float | None = None
-    note: str = ""
-
-
-class Filled(NamedTuple):
-    """Tables with every value in place, and the origins of those that were filled in."""
-
-    tables: dict[str, Any]
-    origins: dict[Path, Origin]
-
-
-class _Filler:
-    """Puts values into the tables and remembers where each came from."""
-
-    def __init__(self, tables: Mapping[str, Any]) -> None:
-        self.tables: dict[str, Any] = deepcopy(dict(tables))
-        self.origins: dict[Path, Origin] = {}
-
-    def table(self, path: Path) -> dict[str, Any]:
-        """Table at `path`, made where it is missing."""
-        node: Any = self.tables
-        for step in path:
-            node = node[step] if isinstance(step, int) else node.setdefault(step, {})
-        return node
-
-    def has(self, path: Path) -> bool:
-        """Whether the file, or an earlier filling, states this value."""
-        return path[-1] in self.table(path[:-1])
-
-    def fill(self, path: Path, value: Range | float, source: Source, note: str) -> None:
-        """State a value unless it is stated already."""
-        if self.has(path):
-            return
-        span = value if isinstance(value, Range) else Range(value, value, value)
-        self.table(path[:-1])[path[-1]] = SI(span.typical)  # type: ignore[index]
-        self.origins[path] = Origin(source, span.low, span.typical, span.high, note)
-
-    def replace(self, path: Path, instead: tuple[str, ...], value: float, note: str) -> None:
-        """State a value that the file gives in another way."""
-        table = self.table(path[:-1])
-        for name in instead:
-            del table[name]
-        table[path[-1]] = SI(value)  # type: ignore[index]
-        self.origins[path] = Origin("given", value, value, value, note)
 
 
 def complete(tables: Mapping[str, Any], document: Document) -> Filled:
@@ -116,7 +49,7 @@ def complete(tables: Mapping[str, Any], document: Document) -> Filled:
     Filled
         New tables, in which a number of the type `SI` was filled in, and origins.
     """
-    filler = _Filler(tables)
+    filler = Filler(tables)
     for fill in _FILLERS:
         fill(filler, document)
     return Filled(filler.tables, filler.origins)
@@ -129,7 +62,7 @@ def pitch_of(document: Document) -> float:
     return KINDS_OF_CHAIN[document.chain.kind or KIND_ASSUMED_WITHOUT_ONE].pitch
 
 
-def _fill_chain(filler: _Filler, document: Document) -> None:
+def _fill_chain(filler: Filler, document: Document) -> None:
     chain = document.chain
     kind = chain.kind or KIND_ASSUMED_WITHOUT_ONE
     source: Source = "kind" if chain.kind else "assumed"
@@ -141,7 +74,7 @@ def _fill_chain(filler: _Filler, document: Document) -> None:
         filler.fill(("chain", *name.split(".")), span, source, note)
 
 
-def _replace_alternatives(filler: _Filler, document: Document, pitch: float) -> None:
+def _replace_alternatives(filler: Filler, document: Document, pitch: float) -> None:
     """Work out link mass, stiffness and allowable tension from what is given instead."""
     chain = document.chain
     if chain.mass_per_length is not None:
@@ -157,13 +90,13 @@ def _replace_alternatives(filler: _Filler, document: Document, pitch: float) -> 
         filler.replace(("chain", "allowable_tension"), names, tension, "breaking_load")
 
 
-def _fill_sprockets(filler: _Filler, document: Document) -> None:
+def _fill_sprockets(filler: Filler, document: Document) -> None:
     axle = AXLE_OVER_PITCH.scaled(pitch_of(document))
     for i in range(len(document.sprocket)):
         filler.fill(("sprocket", i, "axle_diameter"), axle, "assumed", "0.4 of the pitch")
 
 
-def _fill_balls(filler: _Filler, document: Document) -> None:
+def _fill_balls(filler: Filler, document: Document) -> None:
     balls = document.balls
     if balls is None:
         return
@@ -177,7 +110,7 @@ def _fill_balls(filler: _Filler, document: Document) -> None:
         filler.fill(("balls", "feed", "rate"), demand, "assumed", note)
 
 
-def _fill_heights(filler: _Filler, document: Document, balls: Balls) -> None:
+def _fill_heights(filler: Filler, document: Document, balls: Balls) -> None:
     """Say at both places where held balls come and go."""
     heights = [sprocket.center[1] for sprocket in document.sprocket] or [0.0]
     for name, axle in (("load_at", min(heights)), ("unload_at", max(heights))):
@@ -189,7 +122,7 @@ def _fill_heights(filler: _Filler, document: Document, balls: Balls) -> None:
         filler.fill(("balls", "feed", name), value, source, note)
 
 
-def _fill_carriers(filler: _Filler, document: Document) -> None:
+def _fill_carriers(filler: Filler, document: Document) -> None:
     carriers = document.carriers
     if carriers is None:
         return
@@ -205,7 +138,7 @@ def _fill_carriers(filler: _Filler, document: Document) -> None:
     filler.fill(("carriers", "pocket", "offset"), offset, "assumed", "0.4 of the pitch")
 
 
-def _fill_pocket(filler: _Filler, pocket: Pocket, diameter: float) -> None:
+def _fill_pocket(filler: Filler, pocket: Pocket, diameter: float) -> None:
     """Give a pocket the proportions of its shape."""
     form = POCKET_FORMS[pocket.shape or "tray"]
     source: Source = "kind" if pocket.shape else "assumed"
@@ -216,7 +149,7 @@ def _fill_pocket(filler: _Filler, pocket: Pocket, diameter: float) -> None:
     filler.fill(("carriers", "pocket", "tilt"), form.tilt, source, note)
 
 
-def _fill_drive(filler: _Filler, document: Document) -> None:
+def _fill_drive(filler: Filler, document: Document) -> None:
     drive = document.drive
     shaft = drive.shaft
     if shaft.length is not None and shaft.diameter is not None:
@@ -257,7 +190,7 @@ def _shaft_stiffness(length: float, diameter: float, material: str) -> float:
     return SHAFT_SHEAR_MODULI[material] * math.pi * diameter**4 / (32.0 * length)
 
 
-def _fill_currents(filler: _Filler, motor: Motor) -> None:
+def _fill_currents(filler: Filler, motor: Motor) -> None:
     """Currents of a motor whose torque is in proportion to current, loss by no-load current."""
     share = NO_LOAD_OVER_STALL_CURRENT
     path = ("drive", "motor")
@@ -271,7 +204,7 @@ def _fill_currents(filler: _Filler, motor: Motor) -> None:
     filler.fill((*path, "no_load_current"), share.scaled(stall), "assumed", "8 % of stall")
 
 
-_FILLERS: tuple[Callable[[_Filler, Document], None], ...] = (
+_FILLERS: tuple[Callable[[Filler, Document], None], ...] = (
     _fill_chain,
     _fill_sprockets,
     _fill_balls,

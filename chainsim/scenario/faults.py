@@ -11,7 +11,6 @@ from pydantic import ValidationError
 from chainsim.scenario.paths import (
     Path,
     field_at,
-    fields_of,
     is_array,
     nearest,
     tables_at,
@@ -20,7 +19,7 @@ from chainsim.scenario.paths import (
 )
 from chainsim.scenario.quantity import SI
 from chainsim.scenario.schema import Document
-from chainsim.scenario.table import KindKeys, Table, table_in
+from chainsim.scenario.table import KindKeys, Table, fields_of, table_in
 
 LONGEST_SHOWN = 60
 

@@ -6,8 +6,8 @@ from collections.abc import Iterator, Mapping
 from typing import Any
 
 from chainsim.errors import UnitError
-from chainsim.scenario.complete import Filled, Origin, Path
 from chainsim.scenario.faults import Fault, shown
+from chainsim.scenario.filler import Filled, Origin, Path
 from chainsim.scenario.paths import nearest, value_at
 from chainsim.scenario.quantity import PLAIN_NUMBER, Quantity
 from chainsim.scenario.schema import Document

@@ -15,13 +15,7 @@ from pydantic.fields import FieldInfo
 from chainsim.scenario.quantity import SI
 from chainsim.scenario.schema import Document
 from chainsim.scenario.schema_balls import feed_table
-from chainsim.scenario.table import (
-    Table,
-    kind_needs_unit,
-    name_of,
-    quantity_of,
-    table_in,
-)
+from chainsim.scenario.table import Table, fields_of, kind_needs_unit, quantity_of, table_in
 
 Path = tuple[str | int, ...]
 
@@ -56,11 +50,6 @@ def nearest(name: str, known: Iterable[str]) -> str | None:
     """
     found = difflib.get_close_matches(name, list(known), n=1, cutoff=0.6)
     return found[0] if found else None
-
-
-def fields_of(table: type[Table]) -> dict[str, FieldInfo]:
-    """Fields of a table class by their names in the file."""
-    return {name_of(name, field): field for name, field in table.model_fields.items()}
 
 
 def field_at(path: Path) -> FieldInfo | None:
@@ -200,7 +189,7 @@ def assign(tables: dict[str, Any], path: Path, value: Any) -> None:
     path : tuple of str or int
         What `resolve` returned.
     value : object
-        As in a file; a bare number where a unit is due is taken as SI.
+        As in a file.
 
     Raises
     ------
@@ -219,7 +208,7 @@ def assign(tables: dict[str, Any], path: Path, value: Any) -> None:
         node = node[step]
         if not isinstance(node, (dict, list)):
             raise KeyNotFoundError(f"'{label(path[: i + 1], tables)}' is no table in the file")
-    node[path[-1]] = _as_stated(path, value)
+    node[path[-1]] = value
 
 
 def _forget_origins(tables: dict[str, Any], changed: str) -> None:
@@ -230,10 +219,23 @@ def _forget_origins(tables: dict[str, Any], changed: str) -> None:
             del origins[stated]
 
 
-def _as_stated(path: Path, value: Any) -> Any:
-    """Mark a bare number of a program as SI where the file would need a unit."""
+def in_si(path: Path, value: Any) -> Any:
+    """Mark a bare number of a program as SI where the file would need a unit.
+
+    Parameters
+    ----------
+    path : tuple of str or int
+        Where it goes.
+    value : object
+        A number, text, or a list of them.
+
+    Returns
+    -------
+    object
+        The same, with numbers of the type `SI` where a unit is due.
+    """
     if isinstance(value, (list, tuple)):
-        return [_as_stated(path, item) for item in value]
+        return [in_si(path, item) for item in value]
     field = field_at(path)
     quantity = quantity_of(field) if field is not None else None
     is_number = isinstance(value, (int, float)) and not isinstance(value, bool)

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-import re
-import tomllib
 from collections.abc import Mapping, Sequence
 from copy import deepcopy
 from pathlib import Path as FilePath
@@ -15,7 +13,6 @@ from chainsim.errors import Problem, Remark, ScenarioError
 from chainsim.scenario.checks import Case, faults_of_names, faults_of_values
 from chainsim.scenario.complete import complete
 from chainsim.scenario.faults import Fault, faults_of_kinds, faults_of_reading, shown
-from chainsim.scenario.locate import key_lines, line_of
 from chainsim.scenario.origins import faults_of_origins, origins_of
 from chainsim.scenario.overrides import apply_overrides
 from chainsim.scenario.paths import (
@@ -23,10 +20,11 @@ from chainsim.scenario.paths import (
     Path,
     assign,
     field_at,
-    label,
+    in_si,
     resolve,
     value_at,
 )
+from chainsim.scenario.places import Source, scenario_error, tables_of
 from chainsim.scenario.remarks import remarks_on
 from chainsim.scenario.scenario import Scenario
 from chainsim.scenario.schema import Document
@@ -34,8 +32,10 @@ from chainsim.scenario.schema_balls import feed_table
 
 LARGEST_FILE = 1_000_000
 """Longest scenario file that is read [bytes]."""
-CALL_LINE = "--set"
 BYTE_ORDER_MARK = "\ufeff"
+MARK_WAS_SKIPPED = Remark(
+    "", "the file starts with a byte order mark, which was skipped; save it as plain UTF-8"
+)
 
 
 def read_scenario(path: str | FilePath, overrides: Sequence[str] = ()) -> Scenario:
@@ -100,10 +100,11 @@ def parse_scenario(text: str, file: str = "<text>", overrides: Sequence[str] = (
     """
     has_mark = text.startswith(BYTE_ORDER_MARK)
     text = text.removeprefix(BYTE_ORDER_MARK)
-    tables = _tables(text, file)
+    tables = tables_of(text, file)
     changed, faults = apply_overrides(tables, overrides)
-    scenario = _build(tables, text, file, changed, faults)
-    scenario._text = _with_notes(text, [f"{CALL_LINE} {item}" for item in overrides])
+    source = Source(text, file, "--set", frozenset(changed))
+    scenario = _build(tables, source, faults)
+    scenario._text = _with_notes(text, overrides)
     if has_mark:
         note = Remark(
             "", "the file starts with a byte order mark, which was skipped; save as UTF-8"
@@ -138,50 +139,32 @@ def changed_scenario(scenario: Scenario, values: Mapping[str, Any]) -> Scenario:
     for key, value in values.items():
         try:
             path = resolve(key, tables)
-            assign(tables, path, value)
+            assign(tables, path, in_si(path, value))
             changed.add(path)
         except KeyNotFoundError as error:
             faults.append(Fault((key,), shown(value), str(error)))
-    made = _build(tables, scenario.text, scenario.file, changed, faults)
-    made._text = _with_notes(scenario.text, [f"{key} = {value}" for key, value in values.items()])
+    source = Source(scenario.text, scenario.file, f"{scenario.file} (changed)", frozenset(changed))
+    made = _build(tables, source, faults)
+    made._text = _with_notes(scenario.text, [f"{key}={value}" for key, value in values.items()])
     return made
 
 
-def _tables(text: str, file: str) -> dict[str, Any]:
-    """Tables of a TOML text, or its one syntax error."""
-    try:
-        return tomllib.loads(text)
-    except RecursionError:
-        problem = Problem(file, None, "", "", "tables or lists are nested too deeply")
-    except ValueError as error:
-        match = re.search(r"\(at line (\d+), column (\d+)\)", str(error))
-        line = int(match[1]) if match else max(1, text.count("\n"))
-        reason = re.sub(r"\s*\(at .*\)$", "", str(error))
-        column = f" at column {match[2]}" if match else " at the end"
-        problem = Problem(
-            file, line, "", "", f"not valid TOML{column}: {reason[:1].lower()}{reason[1:]}"
-        )
-    raise ScenarioError([problem])
-
-
-def _build(
-    tables: dict[str, Any], text: str, file: str, changed: set[Path], faults: list[Fault]
-) -> Scenario:
+def _build(tables: dict[str, Any], source: Source, call_faults: Sequence[Fault]) -> Scenario:
     """Check, complete and convert the tables."""
     balls = tables.get("balls")
     if isinstance(balls, dict) and "feed" in balls:
         balls["feed"] = feed_table(balls["feed"])
     document, broken = _read(tables)
-    faults = [*faults, *broken, *faults_of_kinds(tables), *faults_of_names(tables)]
+    faults = [*broken, *faults_of_kinds(tables), *faults_of_names(tables)]
     if document is None:
-        raise _error(faults, tables, text, file, changed)
+        raise scenario_error(faults, call_faults, tables, source)
     filled = complete(_mended(tables, broken), document)
     scenario = Scenario.model_validate(filled.tables)
     found = [*faults_of_values(Case(tables, document, scenario)), *faults_of_origins(scenario)]
     faults += [fault for fault in found if not _rests_on(fault, broken)]
-    if faults:
-        raise _error(faults, tables, text, file, changed)
-    scenario._file = file
+    if faults or call_faults:
+        raise scenario_error(faults, call_faults, tables, source)
+    scenario._file = source.file
     scenario._tables = tables
     scenario._origins = origins_of(scenario, tables, filled)
     scenario._remarks = remarks_on(scenario)
@@ -231,29 +214,9 @@ def _rests_on(fault: Fault, broken: Sequence[Fault]) -> bool:
     )
 
 
-def _error(
-    faults: Sequence[Fault], tables: dict[str, Any], text: str, file: str, changed: set[Path]
-) -> ScenarioError:
-    """All faults with their places, in the order of the file."""
-    lines = key_lines(text)
-    problems = []
-    for fault in faults:
-        is_changed = fault.path not in lines and not any(
-            fault.path[:n] in lines for n in range(len(fault.path), 0, -1)
-        )
-        was_set = any(fault.path[: len(path)] == path for path in changed)
-        key = label(fault.path, tables) if fault.path else ""
-        if was_set or (is_changed and fault.path and fault.path[0] not in tables and changed):
-            problems.append(Problem(CALL_LINE, None, key, fault.found, fault.rule))
-        else:
-            line = line_of(fault.path, lines)
-            problems.append(Problem(file, line, key, fault.found, fault.rule))
-    return ScenarioError(sorted(set(problems), key=lambda item: item.line or 0))
-
-
-def _with_notes(text: str, notes: Sequence[str]) -> str:
+def _with_notes(text: str, changes: Sequence[str]) -> str:
     """Text with the changes made to it noted at its end."""
-    if not notes:
+    if not changes:
         return text
-    lines = [f"# changed: {note}".replace("\n", " ") for note in notes]
+    lines = [f"# changed: {change}".replace("\n", " ") for change in changes]
     return "\n".join([text.rstrip("\n"), *lines, ""])

@@ -10,7 +10,7 @@ from typing import Any
 from pydantic import PrivateAttr
 
 from chainsim.errors import Remark
-from chainsim.scenario.complete import Origin
+from chainsim.scenario.filler import Origin
 from chainsim.scenario.paths import nearest
 from chainsim.scenario.schema import Document
 from chainsim.scenario.write import as_json, as_toml, values_only

@@ -7,8 +7,9 @@ from typing import Literal
 from chainsim.scenario.schema_balls import Balls, Carriers
 from chainsim.scenario.schema_chain import Chain, Frame
 from chainsim.scenario.schema_drive import Drive
+from chainsim.scenario.schema_rails import Guide, Wall
 from chainsim.scenario.schema_run import Bench, Event, Limits, Run, StatedOrigin, Study
-from chainsim.scenario.schema_sprocket import Guide, Sprocket, Wall
+from chainsim.scenario.schema_sprocket import Sprocket
 from chainsim.scenario.table import Table, key
 
 FORMAT = 1

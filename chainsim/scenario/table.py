@@ -70,7 +70,7 @@ def key(
     FieldInfo
         For pydantic.
     """
-    extra = {"likely": likely, "usual": usual, "alternative": alternative}
+    extra: Any = {"likely": likely, "usual": usual, "alternative": alternative}
     return Field(
         default,
         description=text,
@@ -123,6 +123,11 @@ def is_count(field: FieldInfo) -> bool:
 def name_of(field_name: str, field: FieldInfo) -> str:
     """Name of a field in the file."""
     return field.alias or field_name
+
+
+def fields_of(table: type[Table]) -> dict[str, FieldInfo]:
+    """Fields of a table class by their names in the file."""
+    return {name_of(name, field): field for name, field in table.model_fields.items()}
 
 
 def table_in(annotation: Any) -> type[Table] | None:

@@ -6,7 +6,7 @@ import json
 from collections.abc import Mapping
 from typing import Any
 
-from chainsim.scenario.complete import Origin
+from chainsim.scenario.filler import Origin
 from chainsim.scenario.quantity import PLAIN_NUMBER
 from chainsim.scenario.schema import Document
 from chainsim.scenario.table import Leaf, Table, leaves, name_of, quantity_of, understands

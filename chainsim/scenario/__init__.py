@@ -8,5 +8,14 @@ from chainsim.scenario.filler import Origin
 from chainsim.scenario.json_schema import json_schema
 from chainsim.scenario.read import parse_scenario, read_scenario
 from chainsim.scenario.scenario import Scenario
+from chainsim.scenario.starter import LAYOUTS, starter
 
-__all__ = ["Origin", "Scenario", "json_schema", "parse_scenario", "read_scenario"]
+__all__ = [
+    "LAYOUTS",
+    "Origin",
+    "Scenario",
+    "json_schema",
+    "parse_scenario",
+    "read_scenario",
+    "starter",
+]

@@ -106,7 +106,7 @@ def _on_drive(document: Document) -> Iterator[Remark]:
         yield Remark("drive.motor", 'not used with kind = "speed"')
     for sprocket in document.sprocket:
         mount = sprocket.mount
-        hangs = mount.kind in ("hung", "arm") and sprocket.name == drive.sprocket
+        hangs = mount.kind == "hung" and sprocket.name == drive.sprocket
         if hangs and drive.reaction == "mount" and mount.center_of_mass == (0.0, 0.0):
             yield Remark(
                 f"sprocket.{sprocket.name}.mount.center_of_mass",

@@ -1,0 +1,283 @@
+"""Write a first, commented scenario for each common layout."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+from types import MappingProxyType
+from typing import NamedTuple
+
+from chainsim.errors import CallError, UnitError
+from chainsim.scenario.paths import nearest
+from chainsim.scenario.starter_sizes import TEETH, Sizes, sizes_for
+from chainsim.units import to_si
+
+LEAN = math.radians(20.0)
+ARM_OVER_DISTANCE = 0.25
+COMMENT_COLUMN = 33
+SPRING_TRAVEL = 0.02  # m, way on which the spring's force changes by its set force
+
+
+class Layout(NamedTuple):
+    """One layout: what it is, which sprocket is driven, and its tables."""
+
+    text: str
+    driven: str
+    head: Callable[[Sizes], str]
+    tail: Callable[[Sizes], str]
+    lean: float = 0.0
+    reaction: str = "frame"
+
+
+def _no_mount(sizes: Sizes) -> str:
+    return ""
+
+
+def _screwed(sizes: Sizes) -> str:
+    return 'mount = { kind = "screwed", shift = "0 mm" } # raise it to give the chain slack\n'
+
+
+def _hung_idler(sizes: Sizes) -> str:
+    return f'mount = {{ kind = "hung", mass = "{_grams(sizes.hung_at_head)}", free = "y" }}\n'
+
+
+def _slide(sizes: Sizes) -> str:
+    axis = f"[{math.sin(LEAN):.4f}, {-math.cos(LEAN):.4f}]"
+    mass = _grams(sizes.hung_at_head)
+    return f'mount = {{ kind = "sliding", mass = "{mass}", axis = {axis} }} # down the slope\n'
+
+
+def _hung_unit(sizes: Sizes) -> str:
+    return (
+        "# all that hangs but the chain: motor, gearing, axle, sprocket\n"
+        f'mount = {{ kind = "hung", mass = "{_grams(sizes.hung_at_tail)}", free = "y" }}\n'
+    )
+
+
+def _counterweight(sizes: Sizes) -> str:
+    return f"""
+[sprocket.mount] # of the head
+kind = "counterweight"
+axis = [0, 1] # the cord pulls it up
+mass = "{_grams(sizes.head_unit)}"
+# the weight carries head, chain and balls, and leaves a pull at the foot
+weight = "{_grams(sizes.counterweight)}"
+pulley_drag = "0.1 N"
+damping = "5 N s/m"
+stops = ["-15 mm", "15 mm"]
+"""
+
+
+def _spring(sizes: Sizes) -> str:
+    rate = sizes.spring_force / SPRING_TRAVEL
+    return f"""
+[sprocket.mount] # of the tail
+kind = "spring"
+axis = [0, -1] # the spring pulls it down
+mass = "{_grams(sizes.head_unit)}"
+rate = "{rate:.2g} N/m"
+set_force = "{sizes.spring_force:.2g} N"
+damping = "3 N s/m"
+stops = ["-15 mm", "15 mm"]
+"""
+
+
+def _arm(sizes: Sizes) -> str:
+    length = 1e3 * max(ARM_OVER_DISTANCE * sizes.distance, 6.0 * sizes.pitch)
+    return f"""
+[sprocket.mount] # of the tail: arm, motor, gearing, axle, sprocket
+kind = "arm"
+pivot = ["{-length:.0f} mm", "0 mm"]
+mass = "{_grams(sizes.hung_at_tail)}"
+center_of_mass = ["0 mm", "0 mm"]
+stops = ["-8 deg", "8 deg"]
+"""
+
+
+LAYOUTS = MappingProxyType(
+    {
+        "head-driven-hung-idler": Layout(
+            "driven at the head; an idle tail hung in the chain takes up the slack",
+            "head",
+            _no_mount,
+            _hung_idler,
+        ),
+        "tail-driven-hung-unit": Layout(
+            "driven at the tail by a unit that hangs from the chain",
+            "tail",
+            _no_mount,
+            _hung_unit,
+        ),
+        "fixed-distance": Layout(
+            "driven at the head; both axles at a fixed distance",
+            "head",
+            _no_mount,
+            _screwed,
+        ),
+        "counterweight-head": Layout(
+            "driven at the tail; a counterweight lifts the head",
+            "tail",
+            _counterweight,
+            _no_mount,
+        ),
+        "spring": Layout(
+            "driven at the head; a spring pulls the tail down",
+            "head",
+            _no_mount,
+            _spring,
+        ),
+        "inclined": Layout(
+            "leans to the left by 20 deg, driven at the head; the tail hangs on a slide",
+            "head",
+            _no_mount,
+            _slide,
+            lean=LEAN,
+        ),
+        "arm": Layout(
+            "driven at the tail by a unit on an arm that rests in the chain",
+            "tail",
+            _no_mount,
+            _arm,
+            reaction="mount",
+        ),
+    }
+)
+"""Name of a layout -> what `starter` writes for it."""
+
+
+def starter(
+    layout: str,
+    height: str | float = "500 mm",
+    ball: str | float = "16 mm",
+    rate: str | float = "1 /s",
+) -> str:
+    """Write a commented scenario that states what a designer will want to change.
+
+    Parameters
+    ----------
+    layout : str
+        A key of `LAYOUTS`.
+    height : str or float
+        Height to lift by [m].
+    ball : str or float
+        Diameter of a ball [m].
+    rate : str or float
+        Balls per second [1/s].
+
+    Returns
+    -------
+    str
+        TOML text that `parse_scenario` reads.
+
+    Raises
+    ------
+    CallError
+        Unknown layout, or a demand that cannot be read or met.
+    """
+    if layout not in LAYOUTS:
+        near = nearest(layout, LAYOUTS)
+        hint = f"did you mean '{near}'? " if near else ""
+        raise CallError(f"layout '{layout}': {hint}there is {', '.join(LAYOUTS)}")
+    sizes = sizes_for(
+        _read("height", height, "length"),
+        _read("ball", ball, "length"),
+        _read("rate", rate, "rate"),
+    )
+    return _text(LAYOUTS[layout], sizes)
+
+
+def _read(name: str, value: str | float, unit_kind: str) -> float:
+    """A demand in SI."""
+    if not isinstance(value, str):
+        return float(value)
+    try:
+        return to_si(value, unit_kind)
+    except UnitError as error:
+        raise CallError(f"{name}: {error}") from None
+
+
+def _text(layout: Layout, sizes: Sizes) -> str:
+    """Join the tables of a starter scenario."""
+    parts = (_head(layout, sizes), _sprockets(layout, sizes), _drive(layout, sizes), _load(sizes))
+    return "\n".join(_aligned(line) for line in "\n".join(parts).split("\n"))
+
+
+def _aligned(line: str) -> str:
+    """Put the comment behind a value into its column."""
+    value, mark, comment = line.partition(" # ")
+    return f"{value.rstrip():<{COMMENT_COLUMN}}# {comment}" if mark and value.strip() else line
+
+
+def _head(layout: Layout, sizes: Sizes) -> str:
+    return f"""\
+# A first scenario: {layout.text}.
+# x points right, y up, seen from the front; the strand on the right rises.
+# Draw and size it with `chainsim check`, prove it in motion with `chainsim run`.
+
+format = 1
+title = "Lift of {_millimetres(sizes.distance)}, {layout.text}"
+
+[chain]
+kind = "{sizes.kind}" # supplies what is not stated; replace by what you measure
+pitch = "{_millimetres(sizes.pitch)}"
+links = {sizes.links} # a whole number of carriers
+# link_mass, link_stiffness, link_damping, roller_diameter, allowable_tension, joint, play, scatter
+"""
+
+
+def _sprockets(layout: Layout, sizes: Sizes) -> str:
+    x = -sizes.distance * math.sin(layout.lean)
+    y = sizes.distance * math.cos(layout.lean)
+    return f"""\
+[[sprocket]] # in the order in which the chain meets them
+name = "head"
+teeth = {TEETH}
+center = ["{_millimetres(x)}", "{_millimetres(y)}"]
+{layout.head(sizes)}
+[[sprocket]]
+name = "tail"
+teeth = {TEETH}
+center = ["0 mm", "0 mm"]
+{layout.tail(sizes)}"""
+
+
+def _drive(layout: Layout, sizes: Sizes) -> str:
+    pockets = sizes.speed / (sizes.every * sizes.pitch)
+    return f"""\
+[drive]
+sprocket = "{layout.driven}"
+kind = "speed" # "motor" takes a [drive.motor] table
+chain_speed = "{sizes.speed:.3g} m/s" # {pockets:.3g} pockets a second come by
+ramp = "0.5 s"
+reaction = "{layout.reaction}" # what takes the torque of the drive
+"""
+
+
+def _load(sizes: Sizes) -> str:
+    inward, outward = _millimetres(0.8 * sizes.pitch), _millimetres(1.5 * sizes.pitch)
+    return f"""\
+[carriers]
+every = {sizes.every} # links from one carrier to the next
+mass = "{_grams(sizes.carrier_mass)}"
+pocket = {{ shape = "tray" }} # floor, lip, tilt, offset, back follow from the ball
+
+[balls]
+diameter = "{_millimetres(sizes.ball)}"
+material = "steel"
+model = "rolling" # "fixed" for a quick study of the chain alone
+feed = {{ kind = "set down", rate = "{sizes.rate:.3g} /s" }}
+
+[limits]
+ball_rate = "{sizes.rate:.3g} /s"
+clearance = {{ inward = "{inward}", outward = "{outward}" }}
+"""
+
+
+def _millimetres(length: float) -> str:
+    return f"{1e3 * length:.6g} mm".replace("-0 mm", "0 mm")
+
+
+def _grams(mass: float) -> str:
+    """Mass to two digits, in a unit that reads well."""
+    rounded = float(f"{mass:.2g}")
+    return f"{rounded:.3g} kg" if rounded >= 0.1 else f"{1e3 * rounded:.3g} g"

@@ -9,6 +9,7 @@ from chainsim.analysis.axles import (
     travel_per_length,
     wrap_load,
 )
+from chainsim.analysis.carried import carried_balls
 from chainsim.analysis.chain_motion import (
     N_HARMONICS,
     Excursion,
@@ -18,22 +19,7 @@ from chainsim.analysis.chain_motion import (
     ripple,
     sag,
 )
-from chainsim.analysis.drive import (
-    Droop,
-    Duty,
-    Efficiency,
-    Overrun,
-    RunBack,
-    chain_travel,
-    droop,
-    duty,
-    efficiency,
-    event_times,
-    lift_height,
-    overrun,
-    run_back,
-    stall,
-)
+from chainsim.analysis.drive import Droop, Duty, droop, duty, stall
 from chainsim.analysis.energy import Audit, energy_audit
 from chainsim.analysis.gaps import Gap, smallest_gaps
 from chainsim.analysis.losses import Loss, is_lost, losses
@@ -45,31 +31,23 @@ from chainsim.analysis.resonance import (
     strand_length,
     string_frequency_of_run,
 )
-from chainsim.analysis.ride import (
-    Ride,
-    Tilt,
-    ball_acceleration,
-    ball_link_lean,
-    carried_balls,
-    carrier_tilts,
-    ride,
-    ride_spectrum,
-)
+from chainsim.analysis.ride import Ride, ball_acceleration, ride, ride_spectrum
 from chainsim.analysis.series import Spectrum
+from chainsim.analysis.slack import Taut, resting_tension, taut
 from chainsim.analysis.steady import Window
+from chainsim.analysis.stops import Overrun, RunBack, chain_travel, event_times, overrun, run_back
 from chainsim.analysis.summary import UNITS, RunSummary, run_summary
 from chainsim.analysis.survey import Strand, Survey, survey
 from chainsim.analysis.tensions import (
     Sides,
     StationTension,
     StrandEnds,
-    Taut,
-    resting_tension,
     sides_of_drive,
     station_tension,
     strand_ends,
-    taut,
 )
+from chainsim.analysis.tilt import Tilt, ball_link_lean, carrier_tilts
+from chainsim.analysis.work import Efficiency, efficiency, lift_height
 
 __all__ = [
     "N_HARMONICS",

@@ -189,8 +189,8 @@ def _strand_directions(s: Survey, sprocket: int) -> np.ndarray:
     """Unit vectors from an axle along its two strands in the first sample, shape (2, 2)."""
     directions = []
     for k, strand in enumerate(s.strands):
-        pins = s.strand_pins[k].pin[0]
-        first, last = s.position[0, pins[0]], s.position[0, pins[-1]]
+        pins = s.strand_pins[k]
+        first, last = s.position[0, pins.first[0]], s.position[0, pins.last[0]]
         along = (last - first) / max(float(np.hypot(*(last - first))), 1e-300)
         if strand.start == sprocket:
             directions.append(along)
@@ -216,14 +216,14 @@ def wrap_load(rec: Any, sprocket: int) -> WrapLoad | None:
         over the whole run where nothing ran steadily. None where no chain lies there.
     """
     s = survey(rec)
-    wrap = s.wraps[sprocket]
-    count = (wrap.exit - wrap.entry) % s.n_pins + 1
-    chosen = wrap.is_wrapped & (s.is_steady if s.steady else True)
+    entry, leave = s.wraps.entry[:, sprocket], s.wraps.leave[:, sprocket]
+    count = (leave - entry) % s.n_pins + 1
+    chosen = (entry >= 0) & (s.is_steady if s.steady else True)
     if not chosen.any():
         return None
     usual = int(np.bincount(count[chosen]).argmax())
     samples = np.flatnonzero(chosen & (count == usual))[:, None]
-    before = (wrap.entry[samples[:, 0]] - 1)[:, None]
+    before = (entry[samples[:, 0]] - 1)[:, None]
     link = (before + np.arange(usual + 1)) % s.n_pins
     pull = s.tension[samples, link].astype(float)
     along = s.position[samples, (link + 1) % s.n_pins] - s.position[samples, link]

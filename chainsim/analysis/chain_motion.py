@@ -7,7 +7,8 @@ from typing import Any, NamedTuple
 import numpy as np
 from scipy.ndimage import maximum_filter1d, minimum_filter1d
 
-from chainsim.analysis.series import amplitude_at
+from chainsim.analysis.loops import strand_excursions, strand_speeds
+from chainsim.analysis.series import amplitudes_at
 from chainsim.analysis.survey import Survey, survey
 from chainsim.analysis.wraps import tangent_line
 
@@ -85,17 +86,9 @@ def _chain_speed(s: Survey) -> np.ndarray:
 
 def _strand_speed(s: Survey, strand: int) -> np.ndarray:
     """Mean speed of the links of one strand along themselves [m/s], shape (n_samples,)."""
-    pins = s.strand_pins[strand]
-    sample = np.arange(len(s.time))[:, None]
-    position, velocity = s.position[sample, pins.pin], s.velocity[sample, pins.pin]
-    along = position[:, 1:] - position[:, :-1]
-    both = velocity[:, 1:] + velocity[:, :-1]
-    length = np.sqrt(along[..., 0] ** 2 + along[..., 1] ** 2)
-    is_link = length > 0.0
-    speed = along[..., 0] * both[..., 0] + along[..., 1] * both[..., 1]
-    speed = np.divide(speed, 2.0 * length, out=np.zeros_like(speed), where=is_link)
-    mean = speed.sum(axis=1) / np.maximum(is_link.sum(axis=1), 1)
-    return np.where(pins.is_known, mean, np.nan)
+    pins, speed = s.strand_pins[strand], np.empty(len(s.time))
+    strand_speeds(s.position, s.velocity, pins.first, pins.n_links, speed)
+    return speed
 
 
 def ripple(rec: Any) -> Ripple | None:
@@ -112,6 +105,11 @@ def ripple(rec: Any) -> Ripple | None:
         None where there was no steady running with chain on its sprockets.
     """
     s = survey(rec)
+    return s.once(("ripple",), lambda: _ripple(s))
+
+
+def _ripple(s: Survey) -> Ripple | None:
+    """Work out `ripple`."""
     speed = chain_speed(s)
     windows = [w for w in s.steady if np.isfinite(speed[w.start : w.stop]).all()]
     if not windows:
@@ -130,10 +128,8 @@ def ripple(rec: Any) -> Ripple | None:
             worst, when = float(swing[at]), float(s.time[window.start + at])
     longest = max(windows, key=lambda w: w.stop - w.start)
     piece = speed[longest.start : longest.stop]
-    harmonic = [
-        amplitude_at(piece, s.interval, k * s.tooth_rate) for k in range(1, N_HARMONICS + 1)
-    ]
-    return Ripple(mean, worst / abs(mean), when, np.array(harmonic) / abs(mean))
+    harmonic = amplitudes_at(piece, s.interval, s.tooth_rate * np.arange(1, N_HARMONICS + 1))
+    return Ripple(mean, worst / abs(mean), when, harmonic / abs(mean))
 
 
 def excursion(rec: Any, strand: int) -> Excursion:
@@ -165,18 +161,11 @@ def _excursion(s: Survey, strand: int) -> Excursion:
         s.center[:, ends.end],
         s.side[ends.end] * s.seat_radius[ends.end],
     )
-    sample = np.arange(len(s.time))
-    position = s.position[sample[:, None], pins.pin]
-    away = position[..., 0] * outward[:, 0:1] + position[..., 1] * outward[:, 1:2]
-    away -= np.sum(start * outward, axis=1)[:, None]
-    away[~pins.is_known] = np.nan
-    highest, lowest = np.argmax(away, axis=1), np.argmin(away, axis=1)
-    return Excursion(
-        np.maximum(away[sample, highest], 0.0),
-        np.maximum(-away[sample, lowest], 0.0),
-        pins.pin[sample, highest],
-        pins.pin[sample, lowest],
-    )
+    size, pin = np.empty((len(s.time), 2)), np.empty((len(s.time), 2), np.int32)
+    offset = np.sum(start * outward, axis=1)
+    strand_excursions(s.position, pins.first, pins.n_links, outward, offset, size, pin)
+    size[np.isnan(offset)] = np.nan
+    return Excursion(size[:, 0], size[:, 1], pin[:, 0], pin[:, 1])
 
 
 def sag(rec: Any, strand: int) -> np.ndarray:
@@ -199,11 +188,12 @@ def sag(rec: Any, strand: int) -> np.ndarray:
     """
     s = survey(rec)
     pins = s.strand_pins[strand]
-    position = s.position[np.arange(len(s.time))[:, None], pins.pin].astype(float)
-    chord = position[:, -1] - position[:, 0]
-    up = np.stack((-chord[:, 1], chord[:, 0]), axis=1)
-    up *= np.where(up[:, 1:2] < 0.0, -1.0, 1.0)
+    samples = np.arange(len(s.time))
+    place = s.position[samples[:, None], pins.pins(samples)].astype(float)
+    away = place - place[:, :1]
+    chord = away[:, -1]
+    up = np.stack((-chord[:, 1], chord[:, 0]), axis=1) * np.where(chord[:, :1] < 0.0, -1.0, 1.0)
+    below = -np.einsum("spc,sc->sp", away, up).min(axis=1)
     length = np.hypot(chord[:, 0], chord[:, 1])
-    up = np.divide(up, length[:, None], out=np.full_like(up, np.nan), where=length[:, None] > 0.0)
-    below = -np.einsum("spc,sc->sp", position - position[:, :1], up)
-    return np.where(pins.is_known, below.max(axis=1), np.nan)
+    is_known = pins.is_known & (length > 0.0)
+    return np.divide(below, length, out=np.full(len(below), np.nan), where=is_known)

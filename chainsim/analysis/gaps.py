@@ -13,11 +13,16 @@ from typing import Any, NamedTuple
 
 import numpy as np
 
-from chainsim.analysis.ride import carried_balls
+from chainsim.analysis.carried import carried_balls
+from chainsim.analysis.chain_motion import excursion
 from chainsim.analysis.survey import Survey, survey
 
 SHARE_OF_PITCH = 0.5
 """Travel of the chain from one looked-at moment to the next [pitches]."""
+
+N_MOMENTS = 12
+"""Moments at which strands are held against each other, evenly spread; and as many in which they
+swing inward most [dimensionless]."""
 
 FAR = 1e9
 """Stands for "no such part" [m]."""
@@ -44,8 +49,8 @@ class Gap(NamedTuple):
 def smallest_gaps(rec: Any) -> list[Gap]:
     """Smallest gap of every kind of pair that the lift has.
 
-    Looked at once per half pitch of travel, so that a gap may be missed by what the parts move
-    in that time.
+    Looked at once per half pitch of travel, strands against each other at the moments in which
+    they swing inward most, so that a gap may be missed by what the parts move in between.
 
     Parameters
     ----------
@@ -123,8 +128,11 @@ def _smallest(s: Survey, samples: np.ndarray, gap: np.ndarray, parts: str) -> li
 
 def _to_walls(s: Survey, samples: np.ndarray) -> list[Gap]:
     """Chain and carriers against walls."""
+    if not s.scenario.wall:
+        return []
     roller, wall = 0.5 * s.scenario.chain.roller_diameter, _pocket_wall(s)
-    corners, gaps = outline_points(s, samples), []
+    corners = outline_points(s, samples)
+    gaps: list[Gap] = []
     for item in s.scenario.wall:
         line = np.asarray(item.points, dtype=float)
         pins = _distance_to_line(s.position[samples].astype(float), line) - roller
@@ -145,13 +153,14 @@ def _strand_ranges(s: Survey, samples: np.ndarray) -> list[tuple[str, np.ndarray
     """Pins of each strand without its two ends at the looked-at samples, with its name."""
     found = []
     for strand, pins in zip(s.strands, s.strand_pins, strict=True):
-        if pins.pin.shape[1] > 2 and pins.is_known[samples].all():
-            found.append((strand.name, pins.pin[samples, 1:-1]))
+        if pins.is_known[samples].all() and int(pins.n_links[samples].min(initial=0)) > 2:
+            found.append((strand.name, pins.pins(samples)[:, 1:-1]))
     return found
 
 
 def _between_strands(s: Survey, samples: np.ndarray) -> list[Gap]:
     """Each strand against each other one: rollers against the line of links."""
+    samples = _leaning_most(s, samples)
     strands, gaps = _strand_ranges(s, samples), []
     rows = np.arange(len(samples))[:, None]
     position = s.position[samples].astype(float)
@@ -161,6 +170,14 @@ def _between_strands(s: Survey, samples: np.ndarray) -> list[Gap]:
             gap = _pin_to_links(a, b) - s.scenario.chain.roller_diameter
             gaps += _smallest(s, samples, gap, f"strand {name} and strand {other}")
     return gaps
+
+
+def _leaning_most(s: Survey, samples: np.ndarray) -> np.ndarray:
+    """Moments at which strands are looked at: evenly spread ones, and the deepest inward swings."""
+    inward = sum(np.nan_to_num(excursion(s, k).inward) for k in range(len(s.strands)))
+    even = samples[:: max(1, len(samples) // N_MOMENTS)]
+    deepest = np.argpartition(-inward, min(N_MOMENTS, len(inward) - 1))[:N_MOMENTS]
+    return np.union1d(even, deepest)
 
 
 def _pin_to_links(pins: np.ndarray, chain: np.ndarray) -> np.ndarray:
@@ -175,7 +192,7 @@ def _pin_to_links(pins: np.ndarray, chain: np.ndarray) -> np.ndarray:
 
 def _to_outside(s: Survey, samples: np.ndarray) -> list[Gap]:
     """Carriers against sprockets outside the loop, over whose outside they pass."""
-    corners = outline_points(s, samples)
+    corners = outline_points(s, samples) if np.any(s.side < 0) else None
     if corners is None:
         return []
     gaps: list[Gap] = []

@@ -6,11 +6,11 @@ from typing import Any, NamedTuple
 
 import numpy as np
 
+from chainsim.analysis.carried import carried_balls
 from chainsim.analysis.chain_motion import chain_speed
-from chainsim.analysis.drive import event_times
-from chainsim.analysis.ride import ball_link_lean, carried_balls
+from chainsim.analysis.stops import event_times
 from chainsim.analysis.survey import Survey, survey
-from chainsim.analysis.wraps import Wrap
+from chainsim.analysis.tilt import ball_link_lean
 
 KEPT_FATES = frozenset({"delivered", "aboard"})
 """Fates of balls that were not lost."""
@@ -208,7 +208,7 @@ def likely_cause(rec: Any, loss: Loss, link: int) -> str:
     if loss.fate == "outside the mouth":
         return "it left the pocket at the head beside the mouth of the chute"
     sample = int(np.argmin(np.abs(s.time - loss.time)))
-    on = next((k for k, w in enumerate(s.wraps) if _is_on(w, sample, link, s.n_pins)), None)
+    on = next((k for k in range(len(s.side)) if _is_on(s, k, sample, link)), None)
     if loss.tension_least <= s.scenario.limits.slack_tension:
         return "the strand went slack below its carrier"
     if loss.lean >= TIPPED:
@@ -220,7 +220,7 @@ def likely_cause(rec: Any, loss: Loss, link: int) -> str:
     return "the ride was too rough for its pocket"
 
 
-def _is_on(wrap: Wrap, sample: int, link: int, n_pins: int) -> bool:
-    """Whether a link lies on a wrap at one sample."""
-    entry, leave = int(wrap.entry[sample]), int(wrap.exit[sample])
-    return bool(wrap.is_wrapped[sample]) and (link - entry) % n_pins < (leave - entry) % n_pins
+def _is_on(s: Survey, sprocket: int, sample: int, link: int) -> bool:
+    """Whether a link lies on a sprocket at one sample."""
+    entry, leave = int(s.wraps.entry[sample, sprocket]), int(s.wraps.leave[sample, sprocket])
+    return entry >= 0 and (link - entry) % s.n_pins < (leave - entry) % s.n_pins

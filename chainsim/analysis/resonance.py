@@ -120,7 +120,7 @@ def strand_length(rec: Any, name: str) -> float:
     s = survey(rec)
     for strand, pins in zip(s.strands, s.strand_pins, strict=True):
         if strand.name == name and pins.is_known[0]:
-            first, last = s.position[0, pins.pin[0, 0]], s.position[0, pins.pin[0, -1]]
+            first, last = s.position[0, pins.first[0]], s.position[0, pins.last[0]]
             return float(np.hypot(*(last - first)))
     return float("nan")
 
@@ -195,7 +195,7 @@ def _mass_per_length(s: Survey, strand: int) -> float:
     loaded = s.channel("carriers/loaded")
     if scenario.balls is not None and loaded is not None and s.strands[strand].carrying:
         pins = s.strand_pins[strand]
-        ahead = (carrier_link[None, :] - pins.pin[:, 0:1]) % s.n_pins
+        ahead = (carrier_link[None, :] - pins.first[:, None]) % s.n_pins
         aboard = np.where(ahead < pins.n_links[:, None], loaded, 0).sum(axis=1)
         mass += (
             scenario.balls.mass

@@ -1,4 +1,4 @@
-"""How rough the ride is: accelerations at the carried balls, tilt of their carriers."""
+"""How rough the ride is: accelerations at the carried balls."""
 
 from __future__ import annotations
 
@@ -6,11 +6,10 @@ from typing import Any, NamedTuple
 
 import numpy as np
 
+from chainsim.analysis.carried import carried_balls
 from chainsim.analysis.series import Spectrum, spectrum, true_runs
-from chainsim.analysis.survey import Survey, survey
-
-SEATED = 3
-"""Value of ``balls/state`` of a ball that sits in a pocket [dimensionless]."""
+from chainsim.analysis.survey import survey
+from chainsim.analysis.tilt import ball_link_lean
 
 
 class Ride(NamedTuple):
@@ -32,48 +31,6 @@ class Ride(NamedTuple):
     rms: float
     time: float
     ball: int
-
-
-class Tilt(NamedTuple):
-    """Tilt of one loaded carrier's link against the straight line of its strand.
-
-    Attributes
-    ----------
-    carrier : int
-        Index of the carrier [dimensionless].
-    tilt : float
-        Mean angle from the direction of the strand [rad], positive counterclockwise.
-    tension : float
-        Mean tension of the link below the carrier [N].
-    n_samples : int
-        Samples the means are taken over [samples].
-    """
-
-    carrier: int
-    tilt: float
-    tension: float
-    n_samples: int
-
-
-def carried_balls(rec: Any) -> np.ndarray:
-    """Which slots hold a ball that sits in a pocket.
-
-    Parameters
-    ----------
-    rec : Recording or Survey
-        The recording.
-
-    Returns
-    -------
-    ndarray of bool, shape (n_samples, n_slots)
-        True where a ball is carried; without ``balls/state``, where its seat reserve is known.
-    """
-    s = survey(rec)
-    state = s.channel("balls/state")
-    if state is not None:
-        return state == SEATED
-    reserve = s.channel("balls/seat_reserve")
-    return np.isfinite(reserve) if reserve is not None else np.zeros((len(s.time), 0), bool)
 
 
 def ball_acceleration(rec: Any, frame: str = "link") -> np.ndarray | None:
@@ -105,43 +62,6 @@ def ball_acceleration(rec: Any, frame: str = "link") -> np.ndarray | None:
     turn = np.exp(1j * lean)
     both = (acceleration[..., 1] - 1j * acceleration[..., 0]) * turn
     return np.stack((-both.imag, both.real), axis=-1)
-
-
-def ball_link_lean(rec: Any) -> np.ndarray:
-    """Angle of each carried ball's link from the direction of its carrying strand.
-
-    Parameters
-    ----------
-    rec : Recording or Survey
-        The recording.
-
-    Returns
-    -------
-    ndarray, shape (n_samples, n_slots)
-        Angle [rad], positive counterclockwise; NaN where the ball rides on no carrying strand.
-    """
-    s = survey(rec)
-    return s.once(("ball_link_lean",), lambda: _ball_link_lean(s))
-
-
-def _ball_link_lean(s: Survey) -> np.ndarray:
-    """Work out `ball_link_lean`."""
-    pocket = np.asarray(s.rec["balls/pocket"])
-    is_held = carried_balls(s) & (pocket >= 0)
-    link = np.where(is_held, np.asarray(s.rec["geometry/carrier_link"])[pocket], 0)
-    sample = np.arange(len(s.time))[:, None]
-    along = s.position[sample, (link + 1) % s.n_pins] - s.position[sample, link]
-    lean = np.full(link.shape, np.nan)
-    for k in s.carrying:
-        pins = s.strand_pins[k]
-        chord = s.position[sample[:, 0], pins.pin[:, -1]] - s.position[sample[:, 0], pins.pin[:, 0]]
-        turn = (along[..., 0] + 1j * along[..., 1]) * np.conj(chord[:, 0] + 1j * chord[:, 1])[
-            :, None
-        ]
-        station = (link - pins.pin[:, 0:1]) % s.n_pins
-        is_here = is_held & (station < pins.n_links[:, None]) & pins.is_known[:, None]
-        lean[is_here] = np.angle(turn[is_here])
-    return lean
 
 
 def ride(rec: Any, frame: str = "link") -> tuple[Ride, Ride] | None:
@@ -215,36 +135,3 @@ def ride_spectrum(rec: Any, axis: int = 0, frame: str = "link") -> Spectrum | No
         return None
     _, start, stop, slot = max(rides)
     return spectrum(acceleration[start:stop, slot, axis].astype(float), s.interval)
-
-
-def carrier_tilts(rec: Any) -> list[Tilt]:
-    """Mean tilt of each loaded carrier on the carrying strand, with the tension below it.
-
-    In steady running; where nothing ran steadily, over the whole run (a lift at rest).
-
-    Parameters
-    ----------
-    rec : Recording or Survey
-        The recording.
-
-    Returns
-    -------
-    list of Tilt
-        One for each carrier that rode loaded on a carrying strand.
-    """
-    s = survey(rec)
-    if not s.has("balls/pocket", "geometry/carrier_link"):
-        return []
-    lean, pocket = ball_link_lean(s), np.asarray(s.rec["balls/pocket"])
-    chosen = np.isfinite(lean) & (s.is_steady if s.steady else np.ones(len(s.time), bool))[:, None]
-    below = (np.asarray(s.rec["geometry/carrier_link"])[pocket] - 1) % s.n_pins
-    tension = np.take_along_axis(s.tension, np.where(chosen, below, 0), axis=1)
-    tilts = []
-    for carrier in np.unique(pocket[chosen]):
-        here = chosen & (pocket == carrier)
-        tilts.append(
-            Tilt(
-                int(carrier), float(lean[here].mean()), float(tension[here].mean()), int(here.sum())
-            )
-        )
-    return tilts

@@ -5,7 +5,6 @@ from __future__ import annotations
 from typing import NamedTuple
 
 import numpy as np
-from scipy.ndimage import maximum_filter1d
 
 
 class Spectrum(NamedTuple):
@@ -56,34 +55,6 @@ def trailing_mean(values: np.ndarray, n_samples: float) -> np.ndarray:
     return mean
 
 
-def never_undercut_for_longer(values: np.ndarray, n_samples: int) -> np.ndarray:
-    """Highest level under which the values never stay for longer than a time.
-
-    A level is undercut for longer than ``n`` samples exactly where the largest of ``n + 1``
-    samples in a row lies under it; so the level sought is the least of those maxima.
-
-    Parameters
-    ----------
-    values : ndarray, shape (n, ...)
-        Values at even steps, in any unit.
-    n_samples : int
-        Allowed time [samples]; zero gives the values themselves.
-
-    Returns
-    -------
-    ndarray, shape (m, ...)
-        Largest of each ``n_samples + 1`` values in a row, m = n − n_samples; the level sought
-        is the least of them along axis 0. Empty where the series is too short.
-    """
-    if len(values) <= n_samples:
-        return values[:0]
-    if n_samples == 0:
-        return values
-    size = n_samples + 1
-    largest = maximum_filter1d(values, size, axis=0, mode="nearest", origin=-(size // 2))
-    return largest[: len(values) - n_samples]
-
-
 def longest_run(is_so: np.ndarray) -> tuple[int, int]:
     """Longest run of true values.
 
@@ -121,33 +92,38 @@ def true_runs(is_so: np.ndarray) -> list[tuple[int, int]]:
     return [(int(start), int(stop)) for start, stop in zip(edge[::2], edge[1::2], strict=True)]
 
 
-def amplitude_at(values: np.ndarray, interval: float, frequency: float) -> float:
-    """Amplitude of one frequency, least squares over the whole series.
+def amplitudes_at(values: np.ndarray, interval: float, frequencies: np.ndarray) -> np.ndarray:
+    """Amplitudes of several frequencies, by one least squares fit over the whole series.
 
-    Fits ``a cos(2π f t) + b sin(2π f t) + c + d t``.
+    Fits ``Σ aₖ cos(2π fₖ t) + bₖ sin(2π fₖ t)`` and a straight line.
 
     Parameters
     ----------
     values : ndarray, shape (n,)
-        Instant values at even steps, in any unit.
+        Values at even steps, in any unit.
     interval : float
         Time between samples [s].
-    frequency : float
-        Frequency to look at [Hz].
+    frequencies : ndarray, shape (m,)
+        Frequencies to look at [Hz].
 
     Returns
     -------
-    float
-        Amplitude, in the unit of the values; NaN with fewer than two periods, or above half
-        of the sample rate.
+    ndarray, shape (m,)
+        Amplitudes, in the unit of the values; NaN with fewer than two periods, or at more than
+        0.45 of the sample rate.
     """
-    if len(values) * interval * frequency < 2.0 or frequency * interval > 0.5:
-        return float("nan")
+    amplitude = np.full(len(frequencies), np.nan)
+    is_seen = (frequencies * interval <= 0.45) & (len(values) * interval * frequencies >= 2.0)
+    if not is_seen.any():
+        return amplitude
     time = np.arange(len(values)) * interval
-    phase = 2.0 * np.pi * frequency * time
-    basis = np.stack((np.cos(phase), np.sin(phase), np.ones_like(time), time), axis=1)
-    fit = np.linalg.lstsq(basis, values.astype(float), rcond=None)[0]
-    return float(np.hypot(fit[0], fit[1]))
+    wave = np.exp(2j * np.pi * time[:, None] * frequencies[is_seen])
+    line = np.stack((np.ones_like(time), time / time[-1]), axis=1)
+    basis = np.concatenate((wave.real, wave.imag, line), axis=1)
+    fit = np.linalg.solve(basis.T @ basis, basis.T @ values.astype(float))
+    count = int(is_seen.sum())
+    amplitude[is_seen] = np.hypot(fit[:count], fit[count : 2 * count])
+    return amplitude
 
 
 def spectrum(values: np.ndarray, interval: float) -> Spectrum:

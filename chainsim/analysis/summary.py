@@ -9,12 +9,15 @@ import numpy as np
 
 from chainsim.analysis.axles import axle_loads, takeup_travel
 from chainsim.analysis.chain_motion import N_HARMONICS, excursion, ripple
-from chainsim.analysis.drive import droop, duty, efficiency, overrun, run_back
+from chainsim.analysis.drive import droop, duty
 from chainsim.analysis.energy import energy_audit
 from chainsim.analysis.losses import is_lost
 from chainsim.analysis.ride import ride
+from chainsim.analysis.slack import taut
+from chainsim.analysis.stops import overrun, run_back
 from chainsim.analysis.survey import Survey, survey
-from chainsim.analysis.tensions import sides_of_drive, taut
+from chainsim.analysis.tensions import sides_of_drive
+from chainsim.analysis.work import efficiency
 
 RunSummary = dict[str, float | int | str | None]
 """Scalars of one run by name; a value that does not exist is None. Units are SI, see `UNITS`."""

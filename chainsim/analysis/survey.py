@@ -13,8 +13,9 @@ from weakref import WeakKeyDictionary
 
 import numpy as np
 
+from chainsim.analysis.loops import find_wraps
 from chainsim.analysis.steady import Window, drive_chain_speed, steady_windows
-from chainsim.analysis.wraps import REACH, StrandPins, Wrap, strand_pins, wrap_on
+from chainsim.analysis.wraps import REACH, StrandPins, Wraps, strand_between
 
 _SURVEYS: WeakKeyDictionary[Any, Survey] = WeakKeyDictionary()
 
@@ -136,17 +137,22 @@ class Survey:
     @cached_property
     def position(self) -> np.ndarray:
         """Pin centers [m], shape (n_samples, n_pins, 2)."""
-        return np.asarray(self.rec["pins/position"])
+        return np.ascontiguousarray(self.rec["pins/position"], dtype=np.float32)
 
     @cached_property
     def velocity(self) -> np.ndarray:
         """Pin velocities [m/s], shape (n_samples, n_pins, 2)."""
-        return np.asarray(self.rec["pins/velocity"])
+        return np.ascontiguousarray(self.rec["pins/velocity"], dtype=np.float32)
 
     @cached_property
     def tension(self) -> np.ndarray:
         """Link tensions [N], shape (n_samples, n_links), negative where a link pushes."""
-        return np.asarray(self.rec["links/tension"])
+        return np.ascontiguousarray(self.rec["links/tension"], dtype=np.float32)
+
+    @cached_property
+    def tension_range(self) -> tuple[float, float]:
+        """Least and largest link tension of all samples [N]."""
+        return float(self.tension.min()), float(self.tension.max())
 
     @cached_property
     def n_pins(self) -> int:
@@ -204,18 +210,19 @@ class Survey:
         return tuple(k for k, strand in enumerate(self.strands) if strand.carrying)
 
     @cached_property
-    def wraps(self) -> tuple[Wrap, ...]:
-        """Pins on each sprocket, in the order of travel."""
-        return tuple(
-            wrap_on(self.position, self.center[:, k], self.seat_radius[k] + REACH * self.pitch)
-            for k in range(len(self.sprocket_names))
-        )
+    def wraps(self) -> Wraps:
+        """Pins on each sprocket."""
+        shape = (len(self.time), len(self.sprocket_names))
+        wraps = Wraps(np.empty(shape, np.int32), np.empty(shape, np.int32))
+        reach = self.seat_radius + REACH * self.pitch
+        find_wraps(self.position, self.center, reach, wraps.entry, wraps.leave)
+        return wraps
 
     @cached_property
     def strand_pins(self) -> tuple[StrandPins, ...]:
-        """Pins and links of each strand, sample by sample."""
+        """Where each strand is in the chain, sample by sample."""
         return tuple(
-            strand_pins(self.wraps[strand.start], self.wraps[strand.end], self.n_pins)
+            strand_between(self.wraps, strand.start, strand.end, self.n_pins)
             for strand in self.strands
         )
 

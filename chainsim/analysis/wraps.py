@@ -15,105 +15,87 @@ REACH = 0.2
 leaves an 8-tooth sprocket by 0.34 pitches within the first pitch after the tangent point."""
 
 
-class Wrap(NamedTuple):
-    """The part of the chain that lies on one sprocket.
+class Wraps(NamedTuple):
+    """The parts of the chain that lie on the sprockets.
 
     Attributes
     ----------
-    entry, exit : ndarray of int, shape (n_samples,)
-        First and last pin on the sprocket, in the direction of travel [dimensionless]: a pin
-        with a larger number is further along.
-    is_wrapped : ndarray of bool, shape (n_samples,)
-        Whether any pin lies there; where none does, `entry` and `exit` mean nothing.
+    entry, leave : ndarray of int32, shape (n_samples, n_sprockets)
+        First and last pin on each sprocket, in the direction of travel [dimensionless]; −1
+        where no pin lies on it.
     """
 
     entry: np.ndarray
-    exit: np.ndarray
-    is_wrapped: np.ndarray
+    leave: np.ndarray
 
 
 class StrandPins(NamedTuple):
-    """The pins and links of one strand, sample by sample.
+    """Where one strand is in the chain, sample by sample.
 
     Attributes
     ----------
-    pin : ndarray of int, shape (n_samples, n_stations + 1)
-        Pin numbers from the start of the strand to its end [dimensionless]; where the strand
-        has fewer links than stations, its last pin is repeated.
-    link : ndarray of int, shape (n_samples, n_stations)
-        Link numbers [dimensionless]; the last link is repeated in the same way.
-    n_links : ndarray of int, shape (n_samples,)
-        Links in the strand at each sample [dimensionless].
-    is_known : ndarray of bool, shape (n_samples,)
-        Whether both its sprockets carry chain; elsewhere the numbers mean nothing.
-    """
-
-    pin: np.ndarray
-    link: np.ndarray
-    n_links: np.ndarray
-    is_known: np.ndarray
-
-
-def wrap_on(position: np.ndarray, center: np.ndarray, reach: float) -> Wrap:
-    """Find the pins that lie on one sprocket.
-
-    Parameters
-    ----------
-    position : ndarray, shape (n_samples, n_pins, 2)
-        Pin centers [m].
-    center : ndarray, shape (n_samples, 2)
-        Axle positions [m].
-    reach : float
-        Largest distance from the axle at which a pin counts as lying on the sprocket [m].
-
-    Returns
-    -------
-    Wrap
-        The first and last of them. Gaps in between (pins that ride up, a loop that hangs
-        free of the teeth) belong to the wrap.
-    """
-    dx = position[:, :, 0] - center[:, 0:1].astype(position.dtype)
-    dy = position[:, :, 1] - center[:, 1:2].astype(position.dtype)
-    is_near = dx * dx + dy * dy <= reach * reach
-    is_last = is_near & ~np.roll(is_near, -1, axis=1)
-    is_first = is_near & ~np.roll(is_near, 1, axis=1)
-    entry, leave = is_first.argmax(axis=1), is_last.argmax(axis=1)
-    for sample in np.flatnonzero(is_last.sum(axis=1) > 1):
-        entry[sample], leave[sample] = _ends_with_gaps(is_near[sample])
-    return Wrap(entry, leave, is_near.any(axis=1) & ~is_near.all(axis=1))
-
-
-def _ends_with_gaps(is_near: np.ndarray) -> tuple[int, int]:
-    """First and last marked pin of a closed loop: those beside its longest unmarked run."""
-    marked = np.flatnonzero(is_near)
-    gaps = np.diff(np.append(marked, marked[0] + len(is_near)))
-    widest = int(np.argmax(gaps))
-    return int(marked[(widest + 1) % len(marked)]), int(marked[widest])
-
-
-def strand_pins(start: Wrap, end: Wrap, n_pins: int) -> StrandPins:
-    """List the pins between two wraps.
-
-    Parameters
-    ----------
-    start, end : Wrap
-        The sprockets at which the strand starts and ends.
+    first : ndarray of int32, shape (n_samples,)
+        Its first pin, the last one on its start sprocket [dimensionless]. Its first link has
+        the same number.
+    n_links : ndarray of int32, shape (n_samples,)
+        Its links [dimensionless]; 0 where one of its sprockets carries no chain.
     n_pins : int
-        Pins in the closed chain [dimensionless].
+        Pins in the whole chain [dimensionless].
+    """
+
+    first: np.ndarray
+    n_links: np.ndarray
+    n_pins: int
+
+    @property
+    def is_known(self) -> np.ndarray:
+        """Whether the strand hangs between two sprockets, shape (n_samples,)."""
+        return self.n_links > 0
+
+    @property
+    def last(self) -> np.ndarray:
+        """Its last pin [dimensionless], shape (n_samples,)."""
+        return (self.first + self.n_links) % self.n_pins
+
+    def pins(self, samples: np.ndarray) -> np.ndarray:
+        """List its pins from start to end.
+
+        Parameters
+        ----------
+        samples : ndarray of int, shape (n,)
+            Samples to list them for [dimensionless].
+
+        Returns
+        -------
+        ndarray of int, shape (n, n_stations + 1)
+            Pin numbers [dimensionless]; the last is repeated where the strand is shorter than
+            at its longest.
+        """
+        n_links = self.n_links[samples, None]
+        station = np.arange(int(n_links.max(initial=0)) + 1)
+        return (self.first[samples, None] + np.minimum(station, n_links)) % self.n_pins
+
+
+def strand_between(wraps: Wraps, start: int, end: int, n_pins: int) -> StrandPins:
+    """Find the strand between two sprockets.
+
+    Parameters
+    ----------
+    wraps : Wraps
+        Pins on the sprockets.
+    start, end : int
+        Index of the sprocket at each end [dimensionless].
+    n_pins : int
+        Pins in the whole chain [dimensionless].
 
     Returns
     -------
     StrandPins
-        Its pins and links; the last pin on `start` is its station 0.
+        Where it is.
     """
-    is_known = start.is_wrapped & end.is_wrapped
-    n_links = np.where(is_known, (end.entry - start.exit) % n_pins, 1)
-    n_links = np.maximum(n_links, 1)
-    station = np.arange(int(n_links.max(initial=1)) + 1)
-    first = start.exit[:, None]
-    pin = (first + np.minimum(station, n_links[:, None])) % n_pins
-    link = (first + np.minimum(station[:-1], n_links[:, None] - 1)) % n_pins
-    return StrandPins(pin, link, n_links, is_known)
+    first, last = wraps.leave[:, start], wraps.entry[:, end]
+    n_links = np.where((first >= 0) & (last >= 0), (last - first) % n_pins, 0)
+    return StrandPins(np.maximum(first, 0), n_links.astype(np.int32), n_pins)
 
 
 def tangent_line(

@@ -7,8 +7,8 @@ import math
 import numpy as np
 
 from chainsim.analysis.axles import axle_loads
+from chainsim.analysis.slack import resting_tension, taut
 from chainsim.analysis.survey import Survey
-from chainsim.analysis.tensions import resting_tension, taut
 from chainsim.findings.finding import (
     DOES_NOT_APPLY,
     NOT_ENOUGH_DATA,

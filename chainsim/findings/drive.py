@@ -8,8 +8,9 @@ from typing import Any
 import numpy as np
 
 from chainsim.analysis.drive import STALL_TIME as LONGEST_STAND
-from chainsim.analysis.drive import Duty, droop, duty, overrun, run_back, stall
+from chainsim.analysis.drive import Duty, droop, duty, stall
 from chainsim.analysis.resonance import Nearness, nearness, string_frequency_of_run
+from chainsim.analysis.stops import overrun, run_back
 from chainsim.analysis.survey import Survey
 from chainsim.closed_forms import whirl_speed
 from chainsim.findings.finding import (

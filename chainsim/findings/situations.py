@@ -6,8 +6,8 @@ from typing import Any, NamedTuple
 
 import numpy as np
 
-from chainsim.analysis.drive import event_times
-from chainsim.analysis.ride import carried_balls
+from chainsim.analysis.carried import carried_balls
+from chainsim.analysis.stops import event_times
 from chainsim.analysis.survey import Survey, survey
 from chainsim.scenario.schema_run import SITUATIONS
 

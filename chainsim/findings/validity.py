@@ -33,7 +33,9 @@ MOST_WAVE_SHARE = 0.8
 
 def _too_stretched(s: Survey) -> str:
     """Whether a link was strained beyond what its law covers."""
-    strain = float(np.max(np.abs(s.tension))) / (s.scenario.chain.link_stiffness * s.pitch)
+    strain = max(-s.tension_range[0], s.tension_range[1]) / (
+        s.scenario.chain.link_stiffness * s.pitch
+    )
     if strain <= MOST_STRAIN:
         return ""
     return f"a link was strained by {100 * strain:.0f} %, its law is linear"

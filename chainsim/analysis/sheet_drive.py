@@ -6,6 +6,7 @@ import math
 from collections.abc import Iterator
 
 from chainsim import closed_forms as cf
+from chainsim.analysis.materials import SHAFT_MATERIALS
 from chainsim.analysis.sheet_chain import Row
 from chainsim.analysis.sized import (
     Sized,
@@ -14,7 +15,6 @@ from chainsim.analysis.sized import (
     starting_pull,
     whirl_margin,
 )
-from chainsim.findings.materials import SHAFT_MATERIALS
 from chainsim.units import format_si
 
 

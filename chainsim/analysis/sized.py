@@ -9,7 +9,7 @@ import numpy as np
 
 from chainsim import closed_forms as cf
 from chainsim.analysis.free_body import FreeBody, Load, free_body, load_of
-from chainsim.findings.materials import SHAFT_MATERIALS
+from chainsim.analysis.materials import SHAFT_MATERIALS
 from chainsim.model.route import lay_chain
 from chainsim.model.tangents import Route, route
 from chainsim.model.wheels import down_of

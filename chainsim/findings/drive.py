@@ -22,7 +22,7 @@ from chainsim.findings.finding import (
     judged,
     unjudged,
 )
-from chainsim.findings.materials import SHAFT_MATERIALS
+from chainsim.analysis.materials import SHAFT_MATERIALS
 from chainsim.findings.places import on_sprocket
 
 RUN_BACK_PITCHES = 1.0
@@ -227,7 +227,7 @@ def shaft_below_whirl(s: Survey) -> Finding:
     span = shaft.length / (shaft.supports - 1)
     critical = whirl_speed(shaft.diameter, span, material.modulus, material.density)
     driven = s.sprocket_names.index(s.scenario.drive.sprocket)
-    rate = np.abs(np.asarray(s.rec["sprockets/rate"])[:, driven])
+    rate = np.abs(s["sprockets/rate"][:, driven])
     at = int(np.argmax(rate))
     measure = Measure(
         what="shaft speed",

@@ -131,7 +131,7 @@ def _travel(s: Survey, k: int) -> Travel:
     """Range of one take-up."""
     sprocket = s.scenario.sprocket[k]
     is_arm = sprocket.mount.kind == "arm"
-    series = np.asarray(s.rec["mounts/angle" if is_arm else "mounts/travel"])[:, k]
+    series = s["mounts/angle" if is_arm else "mounts/travel"][:, k]
     low, high = int(np.argmin(series)), int(np.argmax(series))
     travel = Travel(
         sprocket.name,

@@ -69,7 +69,7 @@ def duty(rec: Any) -> Duty:
         At the driven sprocket; peaks between samples are missed.
     """
     s = survey(rec)
-    torque = np.asarray(s.rec["drive/torque"], dtype=float)
+    torque = np.asarray(s["drive/torque"], dtype=float)
     peak = int(np.argmax(np.abs(torque)))
     steady = torque[s.is_steady]
     power = s.channel("drive/power")

@@ -56,11 +56,7 @@ def energy_audit(rec: Any) -> Audit | None:
     residual = s.channel("energy/residual")
     if residual is None or len(residual) < 2:
         return None
-    losses = {
-        name.removeprefix(LOSS): np.asarray(s.rec[name])
-        for name in s.rec.names()
-        if name.startswith(LOSS)
-    }
+    losses = {name.removeprefix(LOSS): s[name] for name in s.rec.names() if name.startswith(LOSS)}
     names = ("work_drive", "work_knock", "balls_in", "balls_out")
     flows = {name: s.channel(f"energy/{name}") for name in names}
     known = {name: values for name, values in flows.items() if values is not None}

@@ -153,7 +153,7 @@ def _strand_ranges(s: Survey, samples: np.ndarray) -> list[tuple[str, np.ndarray
     """Pins of each strand without its two ends at the looked-at samples, with its name."""
     found = []
     for strand, pins in zip(s.strands, s.strand_pins, strict=True):
-        if pins.is_known[samples].all() and int(pins.n_links[samples].min(initial=0)) > 2:
+        if len(samples) and int(pins.n_links[samples].min()) > 2:
             found.append((strand.name, pins.pins(samples)[:, 1:-1]))
     return found
 

@@ -130,9 +130,9 @@ def _loss(s: Survey, ball: Any) -> Loss:
             int(ball.pocket), nothing, nothing, nothing, nothing, nothing, nothing, cause,
         )  # fmt: skip
     samples, slot = carried
-    pocket = int(np.asarray(s.rec["balls/pocket"])[samples[-1], slot])
-    link = int(np.asarray(s.rec["geometry/carrier_link"])[pocket]) if pocket >= 0 else 0
-    x, y = np.asarray(s.rec["balls/position"])[samples[-1], slot]
+    pocket = int(s["balls/pocket"][samples[-1], slot])
+    link = int(s["geometry/carrier_link"][pocket]) if pocket >= 0 else 0
+    x, y = s["balls/position"][samples[-1], slot]
     speed = chain_speed(s)[samples]
     lean = np.abs(ball_link_lean(s)[samples, slot])
     loss = Loss(
@@ -146,8 +146,8 @@ def _loss(s: Survey, ball: Any) -> Loss:
         -_least(-speed),
         -_least(-lean),
         _least(s.tension[samples, (link - 1) % s.n_pins]),
-        -_least(-np.abs(np.asarray(s.rec["balls/acceleration"])[samples, slot, 0])),
-        _least(np.asarray(s.rec["balls/seat_reserve"])[samples, slot]),
+        -_least(-np.abs(s["balls/acceleration"][samples, slot, 0])),
+        _least(s["balls/seat_reserve"][samples, slot]),
         "",
     )
     return loss._replace(cause=ball.cause or likely_cause(s, loss, link))
@@ -163,7 +163,7 @@ def _last_ride(s: Survey, number: int) -> tuple[np.ndarray, int] | None:
     """Samples of the half second before a ball was last seated, and its slot."""
     if not s.has("balls/number", "balls/pocket", "balls/acceleration", "balls/seat_reserve"):
         return None
-    rode = (np.asarray(s.rec["balls/number"]) == number) & carried_balls(s)
+    rode = (s["balls/number"] == number) & carried_balls(s)
     samples, slots = np.nonzero(rode)
     if not samples.size:
         return None

@@ -87,7 +87,7 @@ def ride(rec: Any, frame: str = "link") -> tuple[Ride, Ride] | None:
     steady = acceleration[samples]
     if not np.isfinite(steady).any():
         return None
-    number = np.asarray(s.rec["balls/number"])
+    number = s["balls/number"]
     rides = []
     for axis in (0, 1):
         size = np.abs(np.nan_to_num(steady[..., axis], nan=0.0))

@@ -35,8 +35,8 @@ def trailing_mean(values: np.ndarray, n_samples: float) -> np.ndarray:
     Returns
     -------
     ndarray, shape (n, ...)
-        Means over the window that ends with each sample; NaN where it would start before
-        the first.
+        Means over the window that ends with each sample, in the unit of the values; NaN where
+        it would start before the first.
     """
     window = max(float(n_samples), 1.0)
     whole, part = int(window), window - int(window)

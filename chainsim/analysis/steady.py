@@ -72,7 +72,7 @@ def drive_chain_speed(s: Survey) -> np.ndarray:
         Chain speed [m/s].
     """
     driven = s.sprocket_names.index(s.scenario.drive.sprocket)
-    rate = np.asarray(s.rec["sprockets/rate"], dtype=float)[:, driven]
+    rate = np.asarray(s["sprockets/rate"], dtype=float)[:, driven]
     arc = s.teeth[driven] * s.pitch / (2.0 * np.pi) if s.teeth[driven] else s.seat_radius[driven]
     return s.side[driven] * rate * arc
 

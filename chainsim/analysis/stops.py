@@ -64,7 +64,7 @@ def chain_travel(rec: Any) -> np.ndarray:
     """
     s = survey(rec)
     driven = s.sprocket_names.index(s.scenario.drive.sprocket)
-    angle = np.asarray(s.rec["sprockets/angle"], dtype=float)[:, driven]
+    angle = np.asarray(s["sprockets/angle"], dtype=float)[:, driven]
     arc = s.teeth[driven] * s.pitch / (2.0 * np.pi) if s.teeth[driven] else s.seat_radius[driven]
     return s.side[driven] * (angle - angle[0]) * arc
 

@@ -104,10 +104,14 @@ class Survey:
 
         Returns
         -------
-        ndarray or None
+        ndarray, shape (n_samples, ...), or None
             Its values, in the unit of the channel.
         """
-        return np.asarray(self.rec[name]) if name in self.rec else None
+        return self[name] if name in self.rec else None
+
+    def __getitem__(self, name: str) -> np.ndarray:
+        """Values of one channel, read once."""
+        return self.once(("channel", name), lambda: np.asarray(self.rec[name]))
 
     @cached_property
     def events(self) -> list:
@@ -185,12 +189,12 @@ class Survey:
     @cached_property
     def seat_radius(self) -> np.ndarray:
         """Radius of the circle through the seated pins [m], shape (n_sprockets,)."""
-        return np.asarray(self.rec["geometry/seat_radius"], dtype=float)
+        return np.asarray(self["geometry/seat_radius"], dtype=float)
 
     @cached_property
     def center(self) -> np.ndarray:
         """Axle positions [m], shape (n_samples, n_sprockets, 2)."""
-        return np.asarray(self.rec["sprockets/center"], dtype=float)
+        return np.asarray(self["sprockets/center"], dtype=float)
 
     @cached_property
     def strands(self) -> tuple[Strand, ...]:

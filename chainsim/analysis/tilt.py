@@ -50,9 +50,9 @@ def ball_link_lean(rec: Any) -> np.ndarray:
 
 def _ball_link_lean(s: Survey) -> np.ndarray:
     """Work out `ball_link_lean`."""
-    pocket = np.asarray(s.rec["balls/pocket"])
+    pocket = s["balls/pocket"]
     is_held = carried_balls(s) & (pocket >= 0)
-    link = np.where(is_held, np.asarray(s.rec["geometry/carrier_link"])[pocket], 0)
+    link = np.where(is_held, s["geometry/carrier_link"][pocket], 0)
     sample = np.arange(len(s.time))[:, None]
     along = s.position[sample, (link + 1) % s.n_pins] - s.position[sample, link]
     lean = np.full(link.shape, np.nan)
@@ -86,9 +86,9 @@ def carrier_tilts(rec: Any) -> list[Tilt]:
     s = survey(rec)
     if not s.has("balls/pocket", "geometry/carrier_link"):
         return []
-    lean, pocket = ball_link_lean(s), np.asarray(s.rec["balls/pocket"])
+    lean, pocket = ball_link_lean(s), s["balls/pocket"]
     chosen = np.isfinite(lean) & (s.is_steady if s.steady else np.ones(len(s.time), bool))[:, None]
-    below = (np.asarray(s.rec["geometry/carrier_link"])[pocket] - 1) % s.n_pins
+    below = (s["geometry/carrier_link"][pocket] - 1) % s.n_pins
     tension = np.take_along_axis(s.tension, np.where(chosen, below, 0), axis=1)
     tilts = []
     for carrier in np.unique(pocket[chosen]):

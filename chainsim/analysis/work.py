@@ -88,7 +88,7 @@ def lift_height(rec: Any, ball: Any) -> float:
     sample = int(np.searchsorted(s.time, ball.seated_time))
     if not np.isfinite(ball.seated_time) or sample >= len(s.time):
         return float("nan")
-    slots = np.flatnonzero(np.asarray(s.rec["balls/number"])[sample] == ball.number)
+    slots = np.flatnonzero(s["balls/number"][sample] == ball.number)
     if not slots.size:
         return float("nan")
-    return float(ball.end_y - np.asarray(s.rec["balls/position"])[sample, slots[0], 1])
+    return float(ball.end_y - s["balls/position"][sample, slots[0], 1])

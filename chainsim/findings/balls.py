@@ -76,7 +76,7 @@ def _smallest_reserve(s: Survey) -> Measure | None:
     if reserve is None or not np.isfinite(reserve).any():
         return None
     sample, slot = np.unravel_index(int(np.nanargmin(reserve)), reserve.shape)
-    number = int(np.asarray(s.rec["balls/number"])[sample, slot])
+    number = int(s["balls/number"][sample, slot])
     return Measure(
         value=float(reserve[sample, slot]),
         is_floor=True,

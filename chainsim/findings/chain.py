@@ -113,7 +113,7 @@ def chain_stays_on(s: Survey) -> Finding:
 
 def _tip_height(s: Survey, sprocket: int) -> float:
     """Height of the tooth tip over the circle of the seated pins [m]."""
-    outline = np.asarray(s.rec["geometry/tooth_outline"])[sprocket]
+    outline = s["geometry/tooth_outline"][sprocket]
     radius = np.hypot(outline[:, 0], outline[:, 1])
     return float(np.nanmax(radius) - s.seat_radius[sprocket])
 

@@ -9,6 +9,7 @@ import numpy as np
 
 from chainsim.analysis.drive import STALL_TIME as LONGEST_STAND
 from chainsim.analysis.drive import Duty, droop, duty, stall
+from chainsim.analysis.materials import SHAFT_MATERIALS
 from chainsim.analysis.resonance import Nearness, nearness, string_frequency_of_run
 from chainsim.analysis.stops import overrun, run_back
 from chainsim.analysis.survey import Survey
@@ -22,7 +23,6 @@ from chainsim.findings.finding import (
     judged,
     unjudged,
 )
-from chainsim.analysis.materials import SHAFT_MATERIALS
 from chainsim.findings.places import on_sprocket
 
 RUN_BACK_PITCHES = 1.0

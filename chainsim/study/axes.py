@@ -7,7 +7,7 @@ choice stands at a share of its range (a sample draws shares between 0 and 1).
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from typing import Any
 
@@ -190,4 +190,8 @@ def _normal(
     return float(mean + deviation * ndtri(below + share * (above - below)))
 
 
-QUANTILES = {"uniform": _uniform, "triangular": _triangular, "normal": _normal}
+QUANTILES: dict[str, Callable[..., float]] = {
+    "uniform": _uniform,
+    "triangular": _triangular,
+    "normal": _normal,
+}

@@ -22,9 +22,11 @@ class FaultList(Protocol):
 
     def add(self, key: str, found: Any, rule: str) -> None:
         """Note one fault under a dotted key, with the value found and the rule."""
+        ...
 
     def unknown(self, where: str, table: Mapping[str, Any], known: tuple[str, ...]) -> None:
         """Note every key of a table that is not known."""
+        ...
 
 
 def read_axis(where: str, table: Mapping[str, Any], faults: FaultList) -> Axis | None:

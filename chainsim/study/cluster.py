@@ -11,7 +11,7 @@ import contextlib
 import queue
 import time
 from collections import deque
-from collections.abc import Callable, Iterable, Iterator, Mapping
+from collections.abc import Callable, Generator, Iterable, Iterator, Mapping
 from typing import Any
 
 from chainsim.errors import CallError
@@ -69,7 +69,9 @@ class DaskEngine:
         self._counted = -_COUNT_EVERY
         _distributed()
 
-    def run(self, jobs: Iterable[Job], stopping: Callable[[], bool]) -> Iterator[Outcome | None]:
+    def run(
+        self, jobs: Iterable[Job], stopping: Callable[[], bool]
+    ) -> Generator[Outcome | None, None, None]:
         """Do jobs and yield their outcomes.
 
         Parameters

@@ -13,7 +13,7 @@ The contract of an engine:
 from __future__ import annotations
 
 import os
-from collections.abc import Callable, Iterable, Iterator
+from collections.abc import Callable, Generator, Iterable
 from typing import Protocol
 
 from chainsim.study.jobs import Job, Outcome, perform
@@ -25,8 +25,11 @@ class Engine(Protocol):
 
     workers: int
 
-    def run(self, jobs: Iterable[Job], stopping: Callable[[], bool]) -> Iterator[Outcome | None]:
+    def run(
+        self, jobs: Iterable[Job], stopping: Callable[[], bool]
+    ) -> Generator[Outcome | None, None, None]:
         """Do jobs and yield their outcomes."""
+        ...
 
 
 class SerialEngine:
@@ -37,7 +40,9 @@ class SerialEngine:
 
     workers = 1
 
-    def run(self, jobs: Iterable[Job], stopping: Callable[[], bool]) -> Iterator[Outcome | None]:
+    def run(
+        self, jobs: Iterable[Job], stopping: Callable[[], bool]
+    ) -> Generator[Outcome | None, None, None]:
         """Do jobs and yield their outcomes.
 
         Parameters

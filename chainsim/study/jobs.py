@@ -77,11 +77,9 @@ def job_from_data(data: Mapping[str, Any]) -> Job:
     Job
         The job.
     """
-    keep = {
-        key: tuple(value) if isinstance(value, list) else value
-        for key, value in data["keep"].items()
-    }
-    return Job(**{**data, "keep": Keep(**keep)})
+    keep = data["keep"]
+    kept = Keep(tuple(keep["findings"]), tuple(keep["summary"]), keep["trajectories"])
+    return Job(**{**data, "keep": kept})
 
 
 @dataclass(frozen=True)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, Literal
 
 from chainsim.closed_forms import growth_at_tip, least_hung_weight, least_lifting_force
 from chainsim.study.heights import height_of
@@ -106,7 +106,7 @@ def _mass_of_link(scenario: Any) -> float:
 def _takeup(scenario: Any) -> Estimate:
     sprocket = takeup_sprocket(scenario)
     tail = _tail(scenario)
-    driven = "tail" if scenario.drive.sprocket == tail.name else "head"
+    driven: Literal["head", "tail"] = "tail" if scenario.drive.sprocket == tail.name else "head"
     payload = carried_mass(scenario)
     moving = sprocket.mount.mass if sprocket.mount.kind in ("spring", "counterweight") else 0.0
     wrap = wrapped_mass(scenario, sprocket)

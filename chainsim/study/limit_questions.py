@@ -76,7 +76,8 @@ class Question:
         Returns
         -------
         float
-            The value itself, or the nearest one whole steps away from the present value.
+            The value itself, or the nearest one whole steps away from the present value
+            [SI unit of the kind].
         """
         value = max(value, self.least)
         if self.step is None:

@@ -192,7 +192,7 @@ def check_axes(plan: Plan, scenarios: BaseScenarios) -> None:
         its last): a key that does not exist, a wrong unit, an impossible value.
     """
     _ = scenarios[plan.scenario]  # a scenario that is wrong by itself is no fault of an axis
-    problems: list[Problem] = []
+    problems = _missing_units(plan, scenarios)
     for axis in plan.axes:
         refusals = [
             refusal
@@ -203,6 +203,33 @@ def check_axes(plan: Plan, scenarios: BaseScenarios) -> None:
             problems += _relocated(plan, axis, refusals[0])
     if problems:
         raise ScenarioError(problems)
+
+
+def _missing_units(plan: Plan, scenarios: BaseScenarios) -> list[Problem]:
+    """Bare numbers where a scenario file would need a unit; a plan is no less strict."""
+    from chainsim.scenario.table import kind_needs_unit, leaves
+
+    kinds = {leaf.key: leaf.unit_kind for leaf in leaves(scenarios[plan.scenario])}
+    stated: list[tuple[str | None, str, Any]] = [
+        (None, key, value) for key, value in plan.fixed.items()
+    ]
+    for axis in plan.axes:
+        stated += [(axis.name, k, v) for choice in _ends(axis) for k, v in choice.values.items()]
+    lacking = {
+        (name, key): value
+        for name, key, value in stated
+        if kind_needs_unit(kinds.get(key)) and isinstance(value, int | float)
+    }
+    return [
+        Problem(
+            plan.file,
+            plan.lines.get(name or ""),
+            key,
+            repr(value),
+            f"needs a {kinds[key]} with its unit",
+        )
+        for (name, key), value in lacking.items()
+    ]
 
 
 def _ends(axis: Axis) -> list[Choice]:

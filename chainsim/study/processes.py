@@ -11,7 +11,7 @@ import sys
 import threading
 import time
 from collections import deque
-from collections.abc import Callable, Iterable, Iterator
+from collections.abc import Callable, Generator, Iterable, Iterator
 from typing import IO, Any
 
 from chainsim.errors import RunError
@@ -34,7 +34,7 @@ class _Worker:
         self.too_long = False
         # Its own process group: Ctrl-C reaches the driver alone, which then decides.
         apart: dict[str, Any] = (
-            {"creationflags": subprocess.CREATE_NEW_PROCESS_GROUP}
+            {"creationflags": getattr(subprocess, "CREATE_NEW_PROCESS_GROUP", 0)}
             if sys.platform == "win32"
             else {"start_new_session": True}
         )
@@ -114,7 +114,9 @@ class ProcessEngine:
         """Process ids of the workers at this moment (dimensionless)."""
         return [worker.process.pid for worker in self._team]
 
-    def run(self, jobs: Iterable[Job], stopping: Callable[[], bool]) -> Iterator[Outcome | None]:
+    def run(
+        self, jobs: Iterable[Job], stopping: Callable[[], bool]
+    ) -> Generator[Outcome | None, None, None]:
         """Do jobs and yield their outcomes.
 
         Parameters

@@ -198,7 +198,23 @@ def weakest(row: Row, names: tuple[str, ...] = ()) -> list[Mapping[str, Any]]:
         Findings that were judged, by outcome, then by margin over scale.
     """
     judged = [f for f in chosen(row, names) if f["outcome"] != "not judged"]
-    return sorted(judged, key=lambda f: (-_SEVERITY[f["outcome"]], relative_margin(f)))
+    return sorted(judged, key=urgency)
+
+
+def urgency(finding: Mapping[str, Any]) -> tuple[int, float]:
+    """Sorting key that puts the finding with the least reserve first.
+
+    Parameters
+    ----------
+    finding : mapping
+        A finding.
+
+    Returns
+    -------
+    tuple of (int, float)
+        Outcome, the worst first, then margin over scale (dimensionless).
+    """
+    return -_SEVERITY[finding["outcome"]], relative_margin(finding)
 
 
 def chosen(row: Row, names: tuple[str, ...]) -> list[Mapping[str, Any]]:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import asdict, is_dataclass
+from dataclasses import asdict
 from typing import Any
 
 from chainsim.study.jobs import Job, recording_path
@@ -82,11 +82,10 @@ def result_of(recording: Any) -> dict[str, Any]:
     dict
         `findings` (list of dict), `summary` (dict) and `stop_reason` (str).
     """
-    from chainsim.analysis import summary
+    from chainsim.analysis import run_summary
 
-    findings = [asdict(f) if is_dataclass(f) else dict(f) for f in recording.findings]
     return {
-        "findings": findings,
-        "summary": dict(summary(recording)),
+        "findings": [asdict(finding) for finding in recording.findings],
+        "summary": run_summary(recording, findings=()),
         "stop_reason": recording.stop_reason,
     }

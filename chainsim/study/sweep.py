@@ -24,15 +24,19 @@ class Watcher(Protocol):
 
     def begin(self, planned: int, reused: int, engine: Engine) -> None:
         """The sweep starts: so many runs planned, so many finished before."""
+        ...
 
     def report(self, outcome: Outcome | None) -> None:
         """A run has ended, or (None) a moment has passed."""
+        ...
 
     def stopping(self) -> None:
         """The user has asked to stop; runs in hand are being finished."""
+        ...
 
     def end(self) -> None:
         """The sweep is over, for whatever reason."""
+        ...
 
 
 @dataclass(frozen=True)

@@ -5,6 +5,7 @@ Workers import this module by name, so it must not depend on pytest.
 
 from __future__ import annotations
 
+import json
 import math
 import os
 import signal
@@ -13,6 +14,8 @@ from pathlib import Path
 
 from chainsim.errors import RunError
 from chainsim.study.jobs import Job, recording_path
+from chainsim.study.points import Point, run_id
+from chainsim.study.store import Store
 
 
 def cheap(job: Job) -> dict:
@@ -99,3 +102,18 @@ def _log(job: Job, what: str) -> None:
 def _log_has(job: Job, what: str) -> bool:
     log = Path(job.folder).with_suffix(".log")
     return log.exists() and f"{what} {job.id}" in log.read_text()
+
+
+def points_of(values: list[dict]) -> list[Point]:
+    """Points for values that need no scenario."""
+    return [
+        Point(i, run_id(json.dumps(v)), {k: str(x) for k, x in v.items()}, v, "made.toml", "")
+        for i, v in enumerate(values)
+    ]
+
+
+def done_in(store: Store, what: str = "finished") -> list[str]:
+    """Ids of the runs that the tasks have logged, one for each time."""
+    log = store.folder.with_suffix(".log")
+    lines = log.read_text().splitlines() if log.exists() else []
+    return [line.split()[1] for line in lines if line.startswith(what)]

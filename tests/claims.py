@@ -66,11 +66,11 @@ class Row:
         return low <= self.deviation <= high
 
     @property
-    def used(self) -> float:
-        """Share of the tolerance that the deviation uses up; one-sided claims use none."""
-        if self.sense != "equal" or not self.tolerance:
+    def share(self) -> float:
+        """Size of the deviation as a share of the expected value; none for one-sided claims."""
+        if self.sense != "equal" or not self.expected:
             return 0.0
-        return abs(self.deviation) / self.tolerance
+        return abs((self.got - self.expected) / self.expected)
 
     def cells(self) -> list[str]:
         unit = f" {self.unit}" if self.unit else ""
@@ -145,13 +145,12 @@ def table(rows: list[Row]) -> str:
     head = ["claim", "source", "expected", "got", "deviation", "tolerance", "reason for it"]
     lines = [head, ["---"] * len(head), *(row.cells() for row in rows)]
     text = "\n".join("| " + " | ".join(cells) + " |" for cells in lines)
-    worst = sorted(rows, key=lambda row: row.used, reverse=True)[:WORST]
+    worst = sorted(rows, key=lambda row: row.share, reverse=True)[:WORST]
     causes = "\n".join(
-        f"- **{row.name}** ({row.amount(row.deviation, '+.2g')} of "
-        f"{row.amount(row.tolerance, '.2g')} allowed): {row.cause or row.why}"
+        f"- **{row.name}** (off by {100 * row.share:.2g} %): {row.cause or row.why}"
         for row in worst
     )
-    return f"{text}\n\nThe {WORST} claims that use up most of their tolerance, and why:\n\n{causes}"
+    return f"{text}\n\nThe {WORST} claims that are furthest off, and why:\n\n{causes}"
 
 
 def rewritten(readme: str, rows: list[Row]) -> str:

@@ -37,7 +37,7 @@ def test_readme_keeps_its_words_and_gets_the_rows():
     assert text.startswith("words\n") and text.endswith("more words\n")
     assert "old table" not in text
     assert "| a claim | a source | 2 N | 2.1 N | +5 % | 10 % | rounding |" in text
-    assert "- **a claim** (+5 % of 10 % allowed): a cause" in text
+    assert "- **a claim** (off by 5 %): a cause" in text
 
 
 def test_failing_claim_names_both_values():

@@ -1,1 +1,1 @@
-"""Tests of chainsim."""
+"""One file for each physical claim: a number from outside against what a user's result rests on."""

@@ -8,11 +8,12 @@ import numpy as np
 from chainsim.integration.samples import BLOCK_SAMPLES
 from chainsim.recording.channels import Channel
 from chainsim.recording.packing import Packer
+from chainsim.recording.tail import Rest
 
 NARROW_CHUNK = 128 * 1024
 """Size [bytes] up to which the chunks of a narrow channel are made longer: fewer, larger writes."""
 LONGEST = 8
-"""Most blocks in a chunk [dimensionless]; bounds what a flush has to write again."""
+"""Most blocks in a chunk [dimensionless]; bounds what a flush puts into the tail."""
 
 
 def chunk_samples(row: Channel, shape: tuple[int, ...]) -> int:
@@ -52,49 +53,42 @@ class Lane:
         self._packer = Packer()
         self._written = 0
         self._fill = 0
-        self._on_disk = 0
 
-    def push(self, values: np.ndarray) -> bool:
+    def push(self, values: np.ndarray) -> None:
         """Take values, write each chunk that gets full.
 
         Parameters
         ----------
         values : ndarray, shape (m, ...)
             Values in the unit of the channel.
-
-        Returns
-        -------
-        bool
-            Whether a chunk that an earlier flush had written in part was written anew
-            [dimensionless]: then the file must be flushed at once, since its index on the disk
-            still points to the old one.
         """
-        start, rewritten, size = 0, False, len(self.buffer)
+        start, size = 0, len(self.buffer)
         while start < len(values):
             take = min(size - self._fill, len(values) - start)
             piece = values[start : start + take]
             start += take
             if take == size and piece.dtype == self.buffer.dtype and piece.flags.c_contiguous:
                 self._write(piece, size)
-                self._written += size
                 continue
             self.buffer[self._fill : self._fill + take] = piece
             self._fill += take
             if self._fill == size:
-                rewritten |= self._on_disk > 0
                 self._write(self.buffer, size)
-                self._written += size
-                self._fill = self._on_disk = 0
-        return rewritten
+                self._fill = 0
 
-    def flush(self) -> None:
-        """Write the part of a chunk that is not on the disk yet."""
-        if self._fill > self._on_disk:
+    def rest(self) -> Rest:
+        """Return the samples that do not fill a chunk yet."""
+        return Rest(self._written, self.buffer[: self._fill])
+
+    def finish(self) -> None:
+        """Write the last chunk, padded with zeros that the dataset's length leaves out."""
+        if self._fill:
             self.buffer[self._fill :] = 0
             self._write(self.buffer, self._fill)
-            self._on_disk = self._fill
+            self._fill = 0
 
     def _write(self, chunk: np.ndarray, samples: int) -> None:
         tail = chunk.shape[1:]
         self._id.set_extent((self._written + samples, *tail))
         self._id.write_direct_chunk((self._written, *(0 for _ in tail)), self._packer.pack(chunk))
+        self._written += samples

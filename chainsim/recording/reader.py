@@ -16,6 +16,7 @@ from chainsim.recording.geometry import shape
 from chainsim.recording.provenance import FORMAT, FORMAT_VERSION
 from chainsim.recording.recording import Recording
 from chainsim.recording.tables import TABLES, Choice
+from chainsim.recording.tail import Rest, joined, read_tail
 
 DEFLATE_LIMIT = 1032
 """Largest ratio at which deflate can shrink data [dimensionless]: 258 bytes from 2 bits (RFC 1951,
@@ -64,6 +65,7 @@ class FileStore:
         self._place = path
         self._handle = handle
         self._samples: int | None = None
+        self._rests: dict[str, Rest] = {}
 
     def move(self, path: Path) -> None:
         """Follow the file to another place; its recorder has closed it."""
@@ -111,9 +113,14 @@ class FileStore:
             dims = len(shape(name).dims) if fixed else 1 + len(_other_dims(name))
             if dataset.ndim != dims or dataset.dtype.kind not in "iuf":
                 raise ValueError(f"it has {dataset.ndim} axes of {dataset.dtype}, not {dims}")
-            if not dataset.ndim:
-                return dataset[()]
-            return dataset[range_of(window, len(dataset) if samples is None else samples)]
+            if samples is None:
+                return dataset[window] if dataset.ndim else dataset[()]
+            if not self._rests:
+                return dataset[range_of(window, samples)]
+            values = joined(dataset[:], self._rests.get(name))
+            if len(values) < samples:
+                raise ValueError("its newest samples do not fit the others")
+            return values[range_of(window, samples)]
 
     def table(self, name: str) -> dict[str, np.ndarray | Choice]:
         """Return the columns of a table; none where it was never written."""
@@ -184,11 +191,18 @@ class FileStore:
 
     def _length(self) -> int:
         """Number of samples that all channels have: a cut-off file may end raggedly."""
-        if self._samples is None or self._handle is None:
+        if self._samples is None:
             names = [name for name in self.names() if not name.startswith("geometry/")]
             with self._reading("its number of samples"):
-                self._samples = min((len(self._dataset(name)) for name in names), default=0)
+                self._rests = {} if self._file.attrs.get("complete") else read_tail(self._place)
+                self._samples = min((self._joined_length(name) for name in names), default=0)
         return self._samples
+
+    def _joined_length(self, name: str) -> int:
+        length, rest = len(self._dataset(name)), self._rests.get(name)
+        if rest is None or not 0 <= rest.first <= length:
+            return length
+        return max(length, rest.first + len(rest.values))
 
     def _column(self, path: str) -> np.ndarray | Choice:
         dataset = self._dataset(path)

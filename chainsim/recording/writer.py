@@ -35,6 +35,7 @@ from chainsim.recording.recorder import Recorder
 from chainsim.recording.recording import Recording
 from chainsim.recording.rows import Static
 from chainsim.recording.tables import TABLES, Choice
+from chainsim.recording.tail import remove_tail, write_tail
 
 FLUSH_EVERY = 1.0
 """Wall time [s] between flushes: what a kill can cost at most, besides the block in work."""
@@ -86,11 +87,14 @@ class FileRecorder(Recorder):
         self.close()
 
     def flush(self) -> None:
-        """Make everything taken so far safe against a kill of the process."""
+        """Make everything taken so far safe against a kill of the process.
+
+        `append` does so once per `FLUSH_EVERY`; more often is seldom worth its time.
+        """
         with self._writing():
-            for lane in self._lanes.values():
-                lane.flush()
             self._open.flush()
+            if self._lanes and not self._finished:
+                write_tail(self.partial, {path: lane.rest() for path, lane in self._lanes.items()})
             self._flushed_at = time.monotonic()
 
     def recording(self) -> Recording:
@@ -163,6 +167,9 @@ class FileRecorder(Recorder):
     def _store_static(self, static: Static, shapes: dict[str, np.ndarray]) -> None:
         self._static = static
         with self._writing():
+            self._axes(
+                self._open, ("sprocket", "strand"), (len(static.sprockets), len(static.strands))
+            )
             for path, values in shapes.items():
                 row = shape(path)
                 group, name = self._group(path)
@@ -195,11 +202,8 @@ class FileRecorder(Recorder):
         with self._writing():
             if not self._lanes:
                 self._create_lanes(values)
-            rewritten = False
             for path, array in values.items():
-                rewritten |= self._lanes[path].push(array)
-            if rewritten:
-                self._open.flush()
+                self._lanes[path].push(array)
         if time.monotonic() - self._flushed_at >= FLUSH_EVERY:
             self.flush()
 
@@ -224,5 +228,9 @@ class FileRecorder(Recorder):
 
     def _end(self, attributes: dict[str, Any]) -> None:
         with self._writing():
+            for lane in self._lanes.values():
+                lane.finish()
             write_attributes(self._open, attributes)
-        self._finished = True
+            self._finished = True
+            self._open.flush()
+            remove_tail(self.partial)

@@ -18,7 +18,7 @@ from chainsim.errors import CallError
 from chainsim.model.tooth import ToothForm
 from chainsim.model.wheels import teeth_of
 from chainsim.report.outline_path import Piece, outline_pieces, seat_places
-from chainsim.report.style import FAINT, INK, PAPER, STEEL
+from chainsim.report.style import FAINT, INK, STEEL
 from chainsim.scenario import Scenario
 from chainsim.units import format_si
 
@@ -94,11 +94,11 @@ def blank_of(scenario: Scenario, sprocket: str, kerf: float = 0.0) -> Blank:
 def _notes(scenario: Scenario, part, tooth: ToothForm, kerf: float) -> tuple[str, ...]:
     pitch = part.pitch or scenario.chain.pitch
     cut = (
-        f"kerf {1e3 * kerf:.2f} mm not allowed for: set the machine to cut {5e2 * kerf:.3f} mm "
-        "outside the outline and inside the bore"
-        if kerf > 0.0
-        else "kerf not allowed for: set it at the machine"
+        f"kerf {1e3 * kerf:.2f} mm is not allowed for: set the machine to cut",
+        f"{5e2 * kerf:.3f} mm outside the outline and inside the bore",
     )
+    if kerf <= 0.0:
+        cut = ("kerf is not allowed for: set it at the machine",)
     return (
         f"{part.name}: {tooth.teeth} teeth, pitch {1e3 * pitch:.3f} mm, "
         f"rollers {2e3 * tooth.roller_radius:.2f} mm",
@@ -109,7 +109,7 @@ def _notes(scenario: Scenario, part, tooth: ToothForm, kerf: float) -> tuple[str
         f"seat radius {1e3 * (tooth.roller_radius + tooth.seat_clearance):.3f} mm, tip radius "
         f"{1e3 * tooth.corner_radius:.3f} mm, pressure angle "
         f"{math.degrees(tooth.pressure_angle):.1f}°",
-        cut,
+        *cut,
         "the square is 10 mm: measure it before cutting",
     )
 
@@ -163,8 +163,6 @@ def outline_svg(scenario: Scenario, sprocket: str, kerf: float = 0.0) -> str:
         f'<svg xmlns="http://www.w3.org/2000/svg" width="{width:.3f}mm" height="{height:.3f}mm" '
         f'viewBox="{-reach:.3f} {-reach:.3f} {width:.3f} {height:.3f}">'
         f"<title>{html.escape(blank.notes[0])}</title>"
-        f'<rect id="paper" x="{-reach:.3f}" y="{-reach:.3f}" width="100%" height="100%" '
-        f'fill="{PAPER}"/>'
         + "".join(layers)
         + f'<g id="notes" font-family="sans-serif" font-size="{text_height}" fill="{INK}">'
         + notes

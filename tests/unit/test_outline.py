@@ -142,8 +142,9 @@ def test_notes_state_sizes_and_kerf(scenario):
     text = outline_svg(scenario, "head", kerf=0.2e-3)
     assert "12 teeth, pitch 10.000 mm, rollers 5.00 mm" in text
     assert "pitch circle 38.637 mm" in text
-    assert "kerf 0.20 mm not allowed for: set the machine to cut 0.100 mm outside" in text
-    assert "kerf not allowed for" in outline_svg(scenario, "head")
+    assert "kerf 0.20 mm is not allowed for" in text
+    assert "0.100 mm outside the outline and inside the bore" in text
+    assert "kerf is not allowed for" in outline_svg(scenario, "head")
 
 
 def test_dxf_passes_the_audit_and_has_the_right_size(scenario, tmp_path):

@@ -1,0 +1,101 @@
+"""The parts of a recorded lift that do not change in a run, as plain values for drawing."""
+
+from __future__ import annotations
+
+import math
+from typing import Any
+
+import numpy as np
+
+OUTLINE_POINTS = 160
+"""Most points of one tooth outline on the page [dimensionless]."""
+
+
+def standing_parts(rec: Any) -> list[dict]:
+    """Return what stands still: walls, guides, chute and trough, as named polylines [m]."""
+    parts = []
+    for name in sorted(rec.names()):
+        if name.startswith(("geometry/walls/", "geometry/guides/")) or name in (
+            "geometry/chute",
+            "geometry/trough",
+        ):
+            points = finite_points(rec[name])
+            if len(points) > 1:
+                parts.append({"name": name.split("/", 1)[1], "points": points.round(5).tolist()})
+    return parts
+
+
+def finite_points(points: np.ndarray) -> np.ndarray:
+    """Return the points without the padding, shape (n, 2) [m]."""
+    points = np.asarray(points, dtype=float).reshape(-1, 2)
+    return points[np.isfinite(points).all(axis=1)]
+
+
+def sprocket_parts(rec: Any) -> list[dict]:
+    """Return name, outline, radius [m] and kind of mount of every sprocket."""
+    outlines = rec["geometry/tooth_outline"]
+    radii = rec["geometry/seat_radius"]
+    centers = rec["sprockets/center"][0]
+    parts = []
+    for index, sprocket in enumerate(rec.scenario.sprocket):
+        outline = finite_points(outlines[index])
+        stride = max(1, math.ceil(len(outline) / OUTLINE_POINTS))
+        kind = sprocket.mount.kind
+        moves = kind not in ("fixed", "screwed")
+        home = sprocket.center if moves else centers[index]
+        parts.append(
+            {
+                "name": sprocket.name,
+                "outline": outline[::stride].round(6).tolist(),
+                "radius": round(float(radii[index]), 6),
+                "moves": moves,
+                "hangs": kind in ("hung", "arm"),
+                "weight": kind == "counterweight",
+                "home": [round(float(x), 6) for x in home],
+            }
+        )
+    return parts
+
+
+def carrier_parts(rec: Any) -> tuple[list[dict], list[list]]:
+    """Return link and outline number of every carrier, and the outlines [m]."""
+    if "geometry/pocket_outline" not in rec:
+        return [], []
+    links = np.asarray(rec["geometry/carrier_link"], dtype=int)
+    shapes: list[list] = []
+    carriers = []
+    for link, outline in zip(links, rec["geometry/pocket_outline"], strict=True):
+        shape = finite_points(outline).round(6).tolist()
+        if shape not in shapes:
+            shapes.append(shape)
+        carriers.append({"link": int(link), "pocket": shapes.index(shape)})
+    return carriers, shapes
+
+
+def view_box(rec: Any, parts: list[dict], standing: list[dict]) -> tuple[float, ...]:
+    """Return left, bottom, right and top of what the whole view must show [m]."""
+    pins = rec["pins/position"][:: max(1, len(rec.time) // 200)]
+    corners = [np.nanmin(pins, axis=(0, 1)), np.nanmax(pins, axis=(0, 1))]
+    for part in parts:
+        reach = 1.3 * part["radius"]
+        drop = 2.4 * part["radius"] if part["hangs"] or part["weight"] else reach
+        center = np.asarray(part["home"])
+        corners += [center - [reach, drop], center + reach]
+        if part["weight"]:
+            corners.append(center + [3.2 * part["radius"], 2.4 * part["radius"]])
+    corners += [point for line in standing for point in np.asarray(line["points"])]
+    if "geometry/pocket_outline" in rec:
+        reach = float(np.nanmax(np.abs(rec["geometry/pocket_outline"])))
+        corners += [corners[0] - reach, corners[1] + reach]
+    stack = np.asarray(corners)
+    return (*stack.min(axis=0), *stack.max(axis=0))
+
+
+def n_slots(rec: Any) -> int:
+    """Return the number of ball slots in a recording [dimensionless]."""
+    return int(rec["balls/number"].shape[1]) if "balls/number" in rec else 0
+
+
+def scalar(rec: Any, name: str) -> float:
+    """Return a single stored value [m], 0 where there is none."""
+    return float(np.asarray(rec[name]).reshape(-1)[0]) if name in rec else 0.0

@@ -11,6 +11,7 @@ from chainsim.units import format_si
 
 
 def check_carriers(case: Case) -> Iterator[Fault]:
+    """Refuse carriers on links that are not there, or two on one link."""
     carriers, links = case.given.carriers, case.given.chain.links
     if carriers is None:
         return
@@ -27,6 +28,7 @@ def check_carriers(case: Case) -> Iterator[Fault]:
 
 
 def check_pocket(case: Case) -> Iterator[Fault]:
+    """Refuse pockets that are narrower than their ball."""
     carriers, balls = case.filled.carriers, case.filled.balls
     if carriers is None or balls is None:
         return
@@ -51,6 +53,7 @@ def check_pocket(case: Case) -> Iterator[Fault]:
 
 
 def check_balls(case: Case) -> Iterator[Fault]:
+    """Refuse balls without carriers, and places where balls cannot come and go."""
     balls, filled = case.given.balls, case.filled.balls
     if balls is None or filled is None:
         return
@@ -78,6 +81,7 @@ def check_balls(case: Case) -> Iterator[Fault]:
 
 
 def check_run(case: Case) -> Iterator[Fault]:
+    """Refuse steps, events and marked keys that make no sense here."""
     run = case.given.run
     if run.step is not None and run.step > 1.0 / run.sample_rate:
         yield case.fault(

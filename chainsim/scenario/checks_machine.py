@@ -13,6 +13,7 @@ from chainsim.units import format_si
 
 
 def check_chain(case: Case) -> Iterator[Fault]:
+    """Refuse values of the chain that are stated twice, half, or not at all."""
     chain, path = case.given.chain, ("chain",)
     if chain.pitch is None and chain.kind is None:
         yield Fault((*path, "pitch"), "", 'required without a kind of chain, such as "10 mm"')
@@ -36,6 +37,7 @@ def check_chain(case: Case) -> Iterator[Fault]:
 
 
 def check_sprockets(case: Case) -> Iterator[Fault]:
+    """Refuse wheels that cannot carry a chain, and mounts that cannot move."""
     if not case.given.sprocket:
         yield Fault(("sprocket",), "none", "at least one [[sprocket]] is required")
     for i, sprocket in enumerate(case.given.sprocket):
@@ -80,6 +82,7 @@ def check_places(case: Case) -> Iterator[Fault]:
 
 
 def check_drive(case: Case) -> Iterator[Fault]:
+    """Refuse drives that cannot turn the chain."""
     drive = case.given.drive
     if drive.kind == "motor" and drive.motor is None:
         yield Fault(("drive", "motor"), "", 'required with kind = "motor"')
@@ -109,6 +112,7 @@ def check_drive(case: Case) -> Iterator[Fault]:
 
 
 def check_motor(case: Case) -> Iterator[Fault]:
+    """Refuse motors whose figures contradict each other."""
     motor, path = case.given.drive.motor, ("drive", "motor")
     if motor is None:
         return
@@ -124,6 +128,7 @@ def check_motor(case: Case) -> Iterator[Fault]:
 
 
 def check_fixed_parts(case: Case) -> Iterator[Fault]:
+    """Refuse walls, guides and temperatures without extent."""
     for i, wall in enumerate(case.given.wall):
         points = wall.points
         if len(points) < 2 or any(a == b for a, b in pairwise(points)):

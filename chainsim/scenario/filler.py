@@ -60,7 +60,19 @@ class Filler:
         return path[-1] in self.table(path[:-1])
 
     def fill(self, path: Path, value: Range | float, source: Source, note: str) -> None:
-        """State a value unless it is stated already."""
+        """State a value unless it is stated already.
+
+        Parameters
+        ----------
+        path : tuple of str or int
+            Where it goes.
+        value : Range or float
+            The value [SI unit of its kind].
+        source : str
+            Where it comes from.
+        note : str
+            What it was taken from.
+        """
         if self.has(path):
             return
         span = value if isinstance(value, Range) else Range(value, value, value)
@@ -68,7 +80,19 @@ class Filler:
         self.origins[path] = Origin(source, span.low, span.typical, span.high, note)
 
     def replace(self, path: Path, instead: tuple[str, ...], value: float, note: str) -> None:
-        """State a value that the file gives in another way."""
+        """State a value that the file gives in another way.
+
+        Parameters
+        ----------
+        path : tuple of str or int
+            Where it goes.
+        instead : tuple of str
+            Keys of the same table that gave it, which are dropped.
+        value : float
+            The value [SI unit of its kind].
+        note : str
+            What it was worked out from.
+        """
         table = self.table(path[:-1])
         for name in instead:
             del table[name]

@@ -21,7 +21,18 @@ class Range(NamedTuple):
     high: float
 
     def scaled(self, factor: float) -> Range:
-        """The same, each value multiplied by `factor` (dimensionless)."""
+        """The same, each value multiplied.
+
+        Parameters
+        ----------
+        factor : float
+            By what (dimensionless).
+
+        Returns
+        -------
+        Range
+            The new one, in the unit of the product.
+        """
         return Range(self.low * factor, self.typical * factor, self.high * factor)
 
 

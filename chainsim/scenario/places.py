@@ -60,7 +60,7 @@ def tables_of(text: str, file: str) -> dict[str, Any]:
         problem = Problem(file, None, "", "", "tables or lists are nested too deeply")
     except ValueError as error:
         match = re.search(r"\(at line (\d+), column (\d+)\)", str(error))
-        line = int(match[1]) if match else max(1, text.count("\n"))
+        line = int(match[1]) if match else text.rstrip().count("\n") + 1
         reason = re.sub(r"\s*\(at .*\)$", "", str(error))
         column = f" at column {match[2]}" if match else " at the end"
         problem = Problem(

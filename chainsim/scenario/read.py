@@ -155,13 +155,14 @@ def _build(tables: dict[str, Any], source: Source, call_faults: Sequence[Fault])
     if isinstance(balls, dict) and "feed" in balls:
         balls["feed"] = feed_table(balls["feed"])
     document, broken = _read(tables)
-    faults = [*broken, *faults_of_kinds(tables), *faults_of_names(tables)]
+    of_kinds = list(faults_of_kinds(tables))
+    faults = [*broken, *of_kinds, *faults_of_names(tables)]
     if document is None:
         raise scenario_error(faults, call_faults, tables, source)
     filled = complete(_mended(tables, broken), document)
     scenario = Scenario.model_validate(filled.tables)
     found = [*faults_of_values(Case(tables, document, scenario)), *faults_of_origins(scenario)]
-    faults += [fault for fault in found if not _rests_on(fault, broken)]
+    faults += [fault for fault in found if not _rests_on(fault, [*broken, *of_kinds])]
     if faults or call_faults:
         raise scenario_error(faults, call_faults, tables, source)
     scenario._file = source.file

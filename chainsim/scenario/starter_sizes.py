@@ -89,7 +89,7 @@ def sizes_for(height: float, ball: float, rate: float) -> Sizes:
     Parameters
     ----------
     height : float
-        Height to lift by, between the axles at least [m].
+        Least distance between the axles, along the lift [m].
     ball : float
         Diameter of a ball [m].
     rate : float

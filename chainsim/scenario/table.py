@@ -13,7 +13,7 @@ from typing import Any, ClassVar, NamedTuple, get_args, get_origin
 from pydantic import BaseModel, ConfigDict, Field
 from pydantic.fields import FieldInfo
 
-from chainsim.scenario.quantity import PLAIN_NUMBER, Count, Quantity
+from chainsim.scenario.quantity import PLAIN_NUMBER, Quantity
 
 
 class KindKeys(NamedTuple):
@@ -96,28 +96,22 @@ def hints(field: FieldInfo) -> dict[str, Any]:
     return dict(extra["chainsim"]) if isinstance(extra, dict) and "chainsim" in extra else {}  # type: ignore[arg-type]
 
 
-def quantity_of(field: FieldInfo) -> Quantity | None:
-    """How the numbers of a field are read; None where it holds no quantity."""
+def quantities_of(field: FieldInfo) -> list[Quantity]:
+    """How the numbers of a field are read, in the order of its type; empty where it has none."""
     found = [item for item in field.metadata if isinstance(item, Quantity)]
-    return found[0] if found else _quantity_in(field.annotation)
+    return found or _quantities_in(field.annotation)
 
 
-def _quantity_in(annotation: Any) -> Quantity | None:
-    """First `Quantity` inside a type such as `tuple[Length, Length] | None`."""
-    for item in getattr(annotation, "__metadata__", ()):
-        if isinstance(item, Quantity):
-            return item
-    for inner in get_args(annotation):
-        found = _quantity_in(inner)
-        if found is not None:
-            return found
-    return None
+def _quantities_in(annotation: Any) -> list[Quantity]:
+    """Each `Quantity` inside a type such as `tuple[Length, Length] | None`."""
+    own = [item for item in getattr(annotation, "__metadata__", ()) if isinstance(item, Quantity)]
+    return own or [item for inner in get_args(annotation) for item in _quantities_in(inner)]
 
 
-def is_count(field: FieldInfo) -> bool:
-    """Whether a field holds a whole number."""
-    inside = [m for arg in get_args(field.annotation) for m in getattr(arg, "__metadata__", ())]
-    return any(isinstance(item, Count) for item in [*field.metadata, *inside])
+def quantity_of(field: FieldInfo) -> Quantity | None:
+    """How the numbers of a field are read; None where it holds none, or of several kinds."""
+    found = quantities_of(field)
+    return found[0] if len({item.kind for item in found}) == 1 else None
 
 
 def name_of(field_name: str, field: FieldInfo) -> str:

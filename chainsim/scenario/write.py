@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import json
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from typing import Any
 
 from chainsim.scenario.filler import Origin
 from chainsim.scenario.quantity import PLAIN_NUMBER
 from chainsim.scenario.schema import Document
-from chainsim.scenario.table import Leaf, Table, leaves, name_of, quantity_of, understands
+from chainsim.scenario.table import Leaf, Table, leaves, name_of, quantities_of, understands
 from chainsim.units import UNITS, to_si
 
 HEAD = ("format", "title", "view")
@@ -59,7 +59,7 @@ def as_toml(document: Document, origins: Mapping[str, Origin]) -> str:
     str
         TOML text that reads back to the same values and origins.
     """
-    head = [f"{name} = {_literal(getattr(document, name), None)}" for name in HEAD]
+    head = [f"{name} = {_literal(getattr(document, name))}" for name in HEAD]
     parts: list[str] = ["\n".join(head) + "\n"]
     for field_name in type(document).model_fields:
         value = getattr(document, field_name)
@@ -106,13 +106,20 @@ def _table_text(header: str, table: Table) -> str:
             and not _is_empty(value)
             and understands(table, name_of(field_name, field))
         ):
-            quantity = quantity_of(field)
-            unit_kind = quantity.kind_for(kind) if quantity else None
-            lines.append(f"{name_of(field_name, field)} = {_literal(value, unit_kind)}")
+            kinds = [quantity.kind_for(kind) for quantity in quantities_of(field)]
+            text = _columns(value, kinds) if len(set(kinds)) > 1 else _literal(value, *kinds[:1])
+            lines.append(f"{name_of(field_name, field)} = {text}")
     return "\n".join(lines) + "\n"
 
 
-def _literal(value: Any, unit_kind: str | None) -> str:
+def _columns(rows: Any, kinds: Sequence[str]) -> str:
+    """TOML of a list of rows whose columns are of several unit kinds."""
+    texts = [[_literal(item, kind) for item, kind in zip(row, kinds, strict=True)] for row in rows]
+    lists = [f"[{', '.join(row)}]" for row in texts]
+    return f"[{', '.join(lists)}]"
+
+
+def _literal(value: Any, unit_kind: str | None = None) -> str:
     """TOML of one value."""
     if isinstance(value, Table):
         return _inline_table(value)

@@ -178,12 +178,10 @@ def starter(
         near = nearest(layout, LAYOUTS)
         hint = f"did you mean '{near}'? " if near else ""
         raise CallError(f"layout '{layout}': {hint}there is {', '.join(LAYOUTS)}")
-    sizes = sizes_for(
-        _read("height", height, "length"),
-        _read("ball", ball, "length"),
-        _read("rate", rate, "rate"),
-    )
-    return _text(LAYOUTS[layout], sizes)
+    chosen = LAYOUTS[layout]
+    along = _read("height", height, "length") / math.cos(chosen.lean)
+    sizes = sizes_for(along, _read("ball", ball, "length"), _read("rate", rate, "rate"))
+    return _text(chosen, sizes)
 
 
 def _read(name: str, value: str | float, unit_kind: str) -> float:

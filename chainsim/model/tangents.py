@@ -40,8 +40,8 @@ class Wheel:
     phase : float or None
         Angle of the wheel (that of seat 0) [rad]; None leaves it to the chain.
     movable : tuple of float, shape (2,), or None
-        Unit direction (dimensionless) in which the axle may be shifted to close the loop taut;
-        None for an axle at a fixed place.
+        Direction in which the axle may be shifted to close the loop taut, of any length, made
+        one (dimensionless); None for an axle at a fixed place.
     pivot : tuple of float, shape (2,), or None
         Where given [m], the axle swings about this point, starting out along `movable`.
     """
@@ -54,6 +54,12 @@ class Wheel:
     phase: float | None = None
     movable: tuple[float, float] | None = None
     pivot: tuple[float, float] | None = None
+
+    def __post_init__(self) -> None:
+        if self.movable is not None:
+            length = math.hypot(*self.movable)
+            unit = (self.movable[0] / length, self.movable[1] / length)
+            object.__setattr__(self, "movable", unit)
 
     def seat_step(self, pitch: float) -> float:
         """Angle between neighboring pins on the wheel [rad], for a chain of `pitch` [m]."""

@@ -274,6 +274,11 @@ def test_impossible_layouts_are_refused_with_the_reason(wheels, n_links, message
         lay_chain(wheels, PITCH, n_links)
 
 
+def test_travel_is_a_length_whatever_the_length_of_the_way():
+    moved = sprocket("tail", 8, (0.0, 0.0), movable=(30.0, -40.0)).moved(0.005)
+    assert moved.center == pytest.approx((0.003, -0.004))
+
+
 def test_swung_axle_keeps_its_distance_from_the_pivot_and_starts_along_its_way():
     arm = sprocket("tail", 8, (0.0, 0.0), movable=(0.0, 1.0), pivot=(0.08, 0.0))
     for travel in (-0.01, 0.002, 0.02):

@@ -50,7 +50,7 @@ def describe(dataset: h5py.Dataset, unit: str, long_name: str) -> None:
     for name, text in ((b"units", unit), (b"long_name", long_name)):
         if text:
             attribute = h5py.h5a.create(dataset.id, name, _TEXT_TYPE, _SCALAR)
-            attribute.write(np.array(text, dtype=object), _TEXT_TYPE)
+            attribute.write(np.array(text, dtype=TEXT))
 
 
 def create_stream(group: h5py.Group, name: str, chunk: tuple[int, ...], dtype: str) -> h5py.Dataset:

@@ -29,6 +29,8 @@ class LinkChoice:
         Links more than the taut loop takes on the axles as drawn (dimensionless).
     travel : tuple of (str, float)
         Name of each movable axle and its travel along its way that closes the loop taut [m].
+    moves : tuple of (str, float, float)
+        Name of each movable axle and by how much it moves to the right and up [m].
     distance : float or None
         Distance of the two axles at which the loop closes taut [m]; None for more than two.
     carriers : int
@@ -47,6 +49,7 @@ class LinkChoice:
     links: int
     surplus: float
     travel: tuple[tuple[str, float], ...]
+    moves: tuple[tuple[str, float, float], ...]
     distance: float | None
     carriers: int
     left_over: int
@@ -146,16 +149,20 @@ def describe_links(
     every = carrier_every or 0
     movable = [i for i, wheel in enumerate(path.wheels) if wheel.movable is not None]
     travel: tuple[tuple[str, float], ...] = ()
+    moves: tuple[tuple[str, float, float], ...] = ()
     fault = ""
     try:
         laid = lay_chain(path.wheels, path.pitch, count, down)
         travel = tuple((path.wheels[i].name, float(laid.travel[i])) for i in movable)
+        shift = laid.wheel_center - [wheel.center for wheel in path.wheels]
+        moves = tuple((path.wheels[i].name, *map(float, shift[i])) for i in movable)
     except LayoutError as error:
         fault = str(error)
     return LinkChoice(
         links=count,
         surplus=count - path.links,
         travel=travel,
+        moves=moves,
         distance=_taut_distance(path, count),
         carriers=count // every if every else 0,
         left_over=count % every if every else 0,
@@ -205,12 +212,10 @@ def _taut_distance(path: Route, count: int) -> float | None:
 
 def _travel_text(choice: LinkChoice) -> str:
     """Say where the axles come to stand."""
-    if choice.travel:
-        if all(abs(way) < UNMOVED for _, way in choice.travel):
+    if choice.moves:
+        if all(math.hypot(right, up) < UNMOVED for _, right, up in choice.moves):
             return "closes taut with the axles as drawn"
-        return ", ".join(
-            f"{name} moves {1e3 * way:+.2f} mm along its way" for name, way in choice.travel
-        )
+        return ", ".join(_move_text(*move) for move in choice.moves)
     if math.isnan(choice.surplus):
         return "hangs free below its sprocket"
     if abs(choice.surplus) < SPARE_FOR_ASSEMBLY:
@@ -220,6 +225,16 @@ def _travel_text(choice: LinkChoice) -> str:
     if choice.distance is not None:
         text += f" (taut at {1e3 * choice.distance:.2f} mm between them)"
     return text
+
+
+def _move_text(name: str, right: float, up: float) -> str:
+    """Say where one axle moves, in the words of the longer part of its way."""
+    way = math.hypot(right, up)
+    if abs(up) >= abs(right):
+        word = "up" if up > 0.0 else "down"
+    else:
+        word = "to the right" if right > 0.0 else "to the left"
+    return f"{name} moves {1e3 * way:.2f} mm {word}"
 
 
 def _carrier_text(choice: LinkChoice) -> str:

@@ -29,7 +29,19 @@ def test_hung_axle_travels_half_a_pitch_for_every_link():
     assert dict(exact.travel)["tail"] == pytest.approx(0.0, abs=1e-9)
     assert dict(long.travel)["tail"] == pytest.approx(-0.5 * PITCH, rel=1e-3)
     assert "closes taut with the axles as drawn" in exact.text
-    assert "tail moves -5.00 mm along its way" in long.text
+    assert "tail moves 5.00 mm down" in long.text
+    assert "tail moves 5.00 mm up" in short.text
+
+
+def test_sideways_travel_is_told_as_such():
+    path = route(
+        [
+            wheel("right", 8, 0.0),
+            Wheel("left", (-0.4, 0.0), 0.013065629648763765, 8, movable=(1, 0)),
+        ],
+        PITCH,
+    )
+    assert "left moves 5.00 mm to the left" in describe_links(path, 89, None).text
 
 
 # checks A3: center distance for a whole number of links, tooth-arc exact, in pitches.

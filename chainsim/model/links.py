@@ -155,7 +155,9 @@ def describe_links(
         laid = lay_chain(path.wheels, path.pitch, count, down)
         travel = tuple((path.wheels[i].name, float(laid.travel[i])) for i in movable)
         shift = laid.wheel_center - [wheel.center for wheel in path.wheels]
-        moves = tuple((path.wheels[i].name, *map(float, shift[i])) for i in movable)
+        moves = tuple(
+            (path.wheels[i].name, float(shift[i, 0]), float(shift[i, 1])) for i in movable
+        )
     except LayoutError as error:
         fault = str(error)
     return LinkChoice(

@@ -210,12 +210,12 @@ def _wear(scenario: Any) -> Question:
 
 
 def _slack(scenario: Any) -> Question:
-    from chainsim.model import build_lift
-
     if any(sprocket.mount.kind not in _FIXED_KINDS for sprocket in scenario.sprocket):
         raise CallError("limit slack: this lift takes up its own slack; ask for `takeup` instead")
     tail = min(scenario.sprocket, key=lambda sprocket: sprocket.center[1])
     x, y = tail.center
+    from chainsim.model import build_lift
+
     n_links = build_lift(scenario).n_links
 
     def values(surplus: float) -> dict[str, Any]:

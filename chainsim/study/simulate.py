@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import functools
 from dataclasses import asdict
 from typing import Any
 
@@ -64,9 +65,15 @@ def scenario_of(job: Job) -> Any:
     Scenario
         Its scenario with the job's values set.
     """
+    return _base(job.text, job.scenario).with_values(job.values)
+
+
+@functools.lru_cache(maxsize=4)
+def _base(text: str, file: str) -> Any:
+    """Scenario before a job's values are set; the jobs of a sweep share a few."""
     from chainsim.scenario import parse_scenario
 
-    return parse_scenario(job.text, file=job.scenario).with_values(job.values)
+    return parse_scenario(text, file=file)
 
 
 def result_of(recording: Any) -> dict[str, Any]:

@@ -13,7 +13,7 @@ from chainsim.errors import CallError
 from chainsim.study.rows import DONE, Row, outcome, relative_margin
 
 ONE_IN_TEN_THOUSAND = 1e-4
-_BOOTSTRAP_DRAWS = 1000
+_BOOTSTRAP_DRAWS = 400
 
 
 @dataclass(frozen=True)

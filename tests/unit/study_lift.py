@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-import time
-
 from chainsim.scenario import parse_scenario
 from chainsim.study.jobs import Job
+from chainsim.study.simulate import scenario_of
 from tests.unit.study_tasks import finding
 
 LIFT = """\
@@ -55,7 +54,7 @@ def lift():
 
 def free_body(job: Job) -> dict:
     """Foot tension of the carrying strand by the free body, judged as a run judges it."""
-    scenario = parse_scenario(job.text, job.scenario).with_values(job.values)
+    scenario = scenario_of(job)
     sprocket = {s.name: s for s in scenario.sprocket}
     height = sprocket["head"].center[1] - sprocket["tail"].center[1]
     spacing = scenario.carriers.every * scenario.chain.pitch
@@ -79,13 +78,28 @@ def free_body(job: Job) -> dict:
 def with_island(job: Job) -> dict:
     """The same lift, failing besides in a narrow range of speeds, as at a resonance."""
     result = free_body(job)
-    speed = parse_scenario(job.text).with_values(job.values).drive.chain_speed
+    speed = scenario_of(job).drive.chain_speed
     if 0.07 < speed < 0.11:
         result["findings"].append(finding("off_resonance", -0.1, "fails"))
     return result
 
 
-def slow(job: Job) -> dict:
-    """The same lift, taking a moment."""
-    time.sleep(0.02)
-    return free_body(job)
+def link_mass_decides(job: Job) -> dict:
+    """A lift whose strand is taut only while its links are heavy enough."""
+    mass = scenario_of(job).chain.link_mass
+    origin = lift().origin("chain.link_mass")
+    least = 0.5 * (origin.low + origin.typical)
+    outcome = "holds" if mass > least else "fails"
+    return {
+        "findings": [finding("carrying_strand_taut", mass - least, outcome)],
+        "summary": {},
+        "stop_reason": "reached end",
+    }
+
+
+def frail_when_knocked(job: Job) -> dict:
+    """The free body, losing its balls at any knock."""
+    result = free_body(job)
+    if any(event.kind == "knock" for event in scenario_of(job).event):
+        result["findings"][0] = finding("balls_stay_seated", -1.0, "fails")
+    return result

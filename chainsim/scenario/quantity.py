@@ -20,6 +20,9 @@ from chainsim.units import KIND_NAMES, UNITS, json_pattern, to_si
 PLAIN_NUMBER = "fraction"
 """The unit kind of values without a dimension: a bare number, or text such as `"3 %"`."""
 
+LEAST_SIZE, LARGEST_SIZE = 1e-15, 1e15
+"""Sizes of numbers [SI] that are taken, zero aside: beyond them powers overflow."""
+
 
 class SI(float):
     """A number that is known to be in SI already, so that it needs no unit.
@@ -91,6 +94,8 @@ class Quantity:
 
     def _refuse_impossible(self, number: float) -> None:
         unit = next(iter(UNITS[self.kind]))
+        if number != 0.0 and not LEAST_SIZE <= abs(number) <= LARGEST_SIZE:
+            raise ValueError("no machine has a value of this size")
         if self.above is not None and number <= self.above:
             raise ValueError(f"must be more than {f'{self.above:g} {unit}'.strip()}")
         if self.least is not None and number < self.least:

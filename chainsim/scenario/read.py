@@ -160,7 +160,11 @@ def _build(tables: dict[str, Any], source: Source, call_faults: Sequence[Fault])
     if document is None:
         raise scenario_error(faults, call_faults, tables, source)
     filled = complete(_mended(tables, broken), document)
-    scenario = Scenario.model_validate(filled.tables)
+    try:
+        scenario = Scenario.model_validate(filled.tables)
+    except ValidationError as error:
+        faults += faults_of_reading(error, filled.tables)
+        raise scenario_error(faults, call_faults, tables, source) from None
     found = [*faults_of_values(Case(tables, document, scenario)), *faults_of_origins(scenario)]
     faults += [fault for fault in found if not _rests_on(fault, [*broken, *of_kinds])]
     if faults or call_faults:

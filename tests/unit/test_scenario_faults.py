@@ -35,6 +35,8 @@ BROKEN = [
         "a decimal point, such as '10.5 mm', and no thousands separator"]),
     ('pitch = "10 mm"', 'pitch = ["10 mm"]', [
         'lift.toml:5: chain.pitch: found ["10 mm"]; a length is due, such as "12.7 mm"']),
+    ('pitch = "10 mm"', 'pitch = "1e300 mm"', [
+        'lift.toml:5: chain.pitch: found "1e300 mm"; no machine has a value of this size']),
     ('kind = "moulded_sturdy"\npitch = "10 mm"', "", [
         'lift.toml:3: chain.pitch: required without a kind of chain, such as "10 mm"']),
     ("links = 112", "links = 2", ["lift.toml:6: chain.links: found 2; must be at least 3"]),
@@ -222,6 +224,14 @@ def test_all_faults_come_at_once_in_the_order_of_the_file():
     found = problems(text.replace('"0.30 kg"', '"0.30 N"'))
     lines = [int(message.split(":")[1]) for message in found]
     assert lines == [5, 9, 13, 15, 19, 20]
+
+
+def test_a_value_that_cannot_be_worked_out_is_refused_with_what_it_came_to():
+    found = problems(edited('diameter = "16 mm"', 'diameter = "1e-9 mm"'))
+    assert (
+        "lift.toml:22: balls.mass: found 4.08407e-33 in SI; no machine has a value of this size"
+        in (found)
+    )
 
 
 def test_a_refused_value_causes_no_second_message():

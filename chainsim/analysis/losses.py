@@ -116,7 +116,12 @@ def losses(rec: Any) -> list[Loss]:
     """
     s = survey(rec)
     lost = [ball for ball in s.balls if is_lost(ball.fate)]
-    return sorted((_loss(s, ball) for ball in lost), key=lambda loss: loss.time)
+    return sorted((_loss(s, ball) for ball in lost), key=_when)
+
+
+def _when(loss: Loss) -> float:
+    """Time of a loss [s]; last where it is not known."""
+    return loss.time if np.isfinite(loss.time) else np.inf
 
 
 def _loss(s: Survey, ball: Any) -> Loss:

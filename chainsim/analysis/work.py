@@ -34,7 +34,8 @@ def efficiency(rec: Any) -> Efficiency | None:
     """Efficiency of the lift over whole ball cycles in steady running.
 
     Counted from the first to the last delivery in the longest steady window, so that as many
-    balls are aboard at the end as at the beginning when they ride at even distances.
+    balls are aboard at the end as at the beginning when they ride at even distances. Held balls
+    rise from ``load_at`` to ``unload_at``.
 
     Parameters
     ----------
@@ -62,8 +63,9 @@ def efficiency(rec: Any) -> Efficiency | None:
         return None
     done = np.interp([ended[0][0], ended[-1][0]], s.time, work)
     rises = [lift_height(s, ball) for _, ball in ended[1:]]
-    weight = s.scenario.balls.mass * s.scenario.frame.gravity
-    lift = weight * float(np.nanmean(rises))
+    known = [rise for rise in rises if np.isfinite(rise)]
+    rise = float(np.mean(known)) if known else s.scenario.balls.unload_at - s.scenario.balls.load_at
+    lift = s.scenario.balls.mass * s.scenario.frame.gravity * rise
     per_ball = float(done[1] - done[0]) / (len(ended) - 1)
     return Efficiency(per_ball, lift, lift / per_ball if per_ball > 0 else np.nan, len(ended) - 1)
 

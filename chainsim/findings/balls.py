@@ -11,6 +11,7 @@ from chainsim.analysis.chain_motion import ripple
 from chainsim.analysis.losses import is_lost, losses
 from chainsim.analysis.ride import ride
 from chainsim.analysis.survey import Survey
+from chainsim.analysis.tilt import carrier_tilts
 from chainsim.closed_forms.statistics import failure_bound, share_interval
 from chainsim.findings.finding import (
     DOES_NOT_APPLY,
@@ -19,6 +20,7 @@ from chainsim.findings.finding import (
     Finding,
     Measure,
     add_note,
+    amount,
     judged,
     unjudged,
 )
@@ -60,7 +62,7 @@ def balls_stay_seated(s: Survey) -> Finding:
     if balls.model == "fixed" and reserve.value >= 0.0:
         held = 'balls are held (model = "fixed") and cannot leave their pockets'
         return unjudged(DOES_NOT_APPLY, held, [replace(reserve, limit=None)])
-    return judged([reserve], s.scenario.limits.reserve, "; ".join((note, *_seat_notes(s))))
+    return judged([reserve], s.scenario.limits.reserve, "; ".join([note, *_seat_notes(s)]))
 
 
 def _smallest_reserve(s: Survey) -> Measure | None:
@@ -125,9 +127,14 @@ def _seat_notes(s: Survey) -> list[str]:
         widest = float(np.nanmax(play))
         if widest > UNSEATED_PLAY * s.scenario.balls.diameter:
             notes.append(f"optimistic: balls have {1e3 * widest:.1f} mm of play in their pockets")
+    tilts = carrier_tilts(s)
+    if tilts:
+        worst = max(tilts, key=lambda tilt: abs(tilt.tilt))
+        lean = f"{abs(math.degrees(worst.tilt)):.1f}° at {amount(worst.tension, 'N')}"
+        notes.append(f"a loaded carrier leans by {lean} in the mean")
     raw = s.channel("balls/raw_peak")
     if raw is not None and np.isfinite(raw).any():
-        notes.append(f"raw contact peak {float(np.nanmax(raw)):.0f} m s-2, not judged")
+        notes.append(f"raw contact peak {float(np.nanmax(raw)):.0f} m/s², not judged")
     return notes
 
 
@@ -235,7 +242,7 @@ def ride_smooth(s: Survey) -> Finding:
                 place=f"ball {felt.ball}",
             )
         )
-        notes.append(f"{name} r.m.s. {felt.rms:.3g} m s-2")
+        notes.append(f"{name} r.m.s. {amount(felt.rms, 'm s-2')}")
     if rides:
         notes.append(f"accelerations are means over {1e3 * s.interval:.3g} ms")
     return add_note(judged(measures, limits.reserve), "; ".join(notes))

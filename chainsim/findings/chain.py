@@ -8,6 +8,7 @@ import numpy as np
 
 from chainsim.analysis.axles import axle_loads
 from chainsim.analysis.slack import resting_tension, taut
+from chainsim.analysis.steady import kind_word
 from chainsim.analysis.survey import Survey
 from chainsim.findings.finding import (
     DOES_NOT_APPLY,
@@ -15,12 +16,16 @@ from chainsim.findings.finding import (
     Finding,
     Measure,
     add_note,
+    amount,
     judged,
     unjudged,
 )
 from chainsim.findings.places import on_sprocket, on_strand
 
 ONE_SEAT = 1.0
+
+LEFT_WORDS = frozenset({"off", "left", "derailed"})
+"""Words in the kind of an event that tells of a chain that came off a sprocket."""
 
 
 def no_tooth_skipped(s: Survey) -> Finding:
@@ -120,7 +125,8 @@ def _tip_height(s: Survey, sprocket: int) -> float:
 
 def _left(s: Survey, name: str) -> bool:
     """Whether the run logged that the chain left this sprocket."""
-    return any("off" in e.kind.split() or "left" in e.kind for e in s.events if e.subject == name)
+    kinds = [kind_word(event.kind).split("_") for event in s.events if event.subject == name]
+    return any(LEFT_WORDS.intersection(words) for words in kinds)
 
 
 def carrying_strand_taut(s: Survey) -> Finding:
@@ -201,14 +207,14 @@ def links_hold(s: Survey) -> Finding:
         time=time,
         place=place,
     )
-    notes = [f"peak of means over {1e3 * s.interval:.3g} ms: {mean[0]:.3g} N"]
+    notes = [f"peak of means over {1e3 * s.interval:.3g} ms: {amount(mean[0], 'N')}"]
     for load in axle_loads(s):
         kept = s.extremes.get(f"axle_load.{load.sprocket}")
         peak = max(load.peak, kept.value) if kept is not None else load.peak
-        notes.append(f"axle {load.sprocket} {peak:.3g} N")
+        notes.append(f"axle {load.sprocket} {amount(peak, 'N')}")
     push = s.extremes.get("link_push")
-    if push is not None and push.value > 0.0:
-        notes.append(f"largest push {push.value:.3g} N")
+    if push is not None and push.value:
+        notes.append(f"largest push {amount(abs(push.value), 'N')}")
     return judged([measure], s.scenario.limits.reserve, "; ".join(notes))
 
 

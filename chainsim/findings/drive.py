@@ -13,6 +13,7 @@ from chainsim.analysis.materials import SHAFT_MATERIALS
 from chainsim.analysis.resonance import Nearness, nearness, string_frequency_of_run
 from chainsim.analysis.stops import overrun, run_back
 from chainsim.analysis.survey import Survey
+from chainsim.analysis.work import efficiency
 from chainsim.closed_forms import whirl_speed
 from chainsim.findings.finding import (
     DOES_NOT_APPLY,
@@ -20,6 +21,7 @@ from chainsim.findings.finding import (
     Finding,
     Measure,
     add_note,
+    amount,
     judged,
     unjudged,
 )
@@ -45,27 +47,30 @@ def drive_copes(s: Survey) -> Finding:
     Finding
         The least of: time at a stand under power, run-back after a stop, cut or reversal,
         droop, peak torque, and root mean square torque of steady running against the
-        continuous rating. Torques are told at the driven sprocket.
+        continuous rating. Torques are told at the driven sprocket. A set speed without a
+        largest torque copes with everything: it is measured, and judged only on run-back.
     """
     load = duty(s)
-    measures = [_standing(s), *_torques(s, load), *_drooping(s), *_running_back(s)]
-    known = [measure for measure in measures if measure is not None]
-    return add_note(judged(known, s.scenario.limits.reserve), _duty_note(s, load))
+    measures = [*_torques(s, load), *_standing(s), *_drooping(s), *_running_back(s)]
+    return add_note(judged(measures, s.scenario.limits.reserve), _duty_note(s, load))
 
 
-def _standing(s: Survey) -> Measure:
-    """Time that the drive stood under power."""
+def _standing(s: Survey) -> list[Measure]:
+    """Time that the drive stood under power; a set speed without a largest torque cannot."""
+    if s.scenario.drive.kind == "speed" and s.scenario.drive.max_torque is None:
+        return []
     start, duration = stall(s)
-    said = s.rec.stop_reason if "stall" in s.rec.stop_reason else ""
-    return Measure(
-        what="longest stand under power",
-        value=duration,
-        unit="s",
-        limit=LONGEST_STAND,
-        time=start,
-        place=on_sprocket(s.scenario.drive.sprocket),
-        has_failed=duration > LONGEST_STAND or bool(said),
-    )
+    return [
+        Measure(
+            what="longest stand under power",
+            value=duration,
+            unit="s",
+            limit=LONGEST_STAND,
+            time=start,
+            place=on_sprocket(s.scenario.drive.sprocket),
+            has_failed=duration > LONGEST_STAND or "stall" in s.rec.stop_reason,
+        )
+    ]
 
 
 def _torques(s: Survey, load: Duty) -> list[Measure]:
@@ -134,10 +139,14 @@ def _duty_note(s: Survey, load: Duty) -> str:
     """Power and current of steady running, overrun after a stop."""
     notes = []
     if math.isfinite(load.mean_power):
-        notes.append(f"mean power {load.mean_power:.3g} W")
+        notes.append(f"mean power {amount(load.mean_power, 'W')}")
     current = s.channel("drive/current")
     if current is not None and np.isfinite(current).any():
         notes.append(f"peak current {float(np.nanmax(np.abs(current))):.3g} A")
+    work = efficiency(s)
+    if work is not None:
+        spent, lifted = amount(work.work_per_ball, "J"), amount(work.lift_work_per_ball, "J")
+        notes.append(f"{spent} a ball for {lifted} of lifting, efficiency {work.efficiency:.0%}")
     ran_on = overrun(s)
     if ran_on is not None:
         after = ran_on.cause.replace("_", " ")

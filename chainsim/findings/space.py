@@ -34,7 +34,8 @@ def strand_in_clearance(s: Survey) -> Finding:
     -------
     Finding
         Largest excursion in steady running [m], inward and outward each against its own
-        clearance, of every strand.
+        clearance. Judged on the carrying strands (on all, where none carries); the others are
+        told beside.
     """
     clearance = s.scenario.limits.clearance
     if not s.steady:
@@ -50,12 +51,13 @@ def strand_in_clearance(s: Survey) -> Finding:
             at = int(np.argmax(steady))
             if steady[at] < 0.0:
                 continue
+            is_judged = strand.carrying or not s.carrying
             measures.append(
                 Measure(
                     what=f"{side} excursion of {strand.name}",
                     value=float(size[at]),
                     unit="m",
-                    limit=limit,
+                    limit=limit if is_judged else None,
                     time=float(s.time[at]),
                     place=at_pin(strand.name, int(pin[at])),
                 )

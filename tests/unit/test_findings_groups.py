@@ -192,6 +192,10 @@ def test_excursion_inward_and_outward_have_limits_of_their_own(rec):
     assert finding.value == pytest.approx(swing, rel=0.05) and finding.limit == 0.008
     tight = changed(rec, limits__clearance__inward="0.5 mm")
     assert found(tight, "strand_in_clearance").outcome == "fails"
+    position = rec["pins/position"].copy()
+    position[position[..., 0] < -0.9 * SEAT_RADIUS] -= [0.02, 0.0]  # the strand that goes down
+    bowed = found(Overlay(rec, {"pins/position": position}), "strand_in_clearance")
+    assert bowed.outcome == "holds" and "outward excursion of head-tail" in bowed.note
 
 
 def test_parts_that_touch_fail_even_without_a_limit(rec):
@@ -241,8 +245,16 @@ def test_without_a_movable_axle_there_is_no_take_up(rec):
 def test_a_drive_that_stands_under_power_fails(rec):
     rate = rec["sprockets/rate"].copy()
     rate[1000:1100] = 0.0
-    finding = found(Overlay(rec, {"sprockets/rate": rate}), "drive_copes")
+    weak = changed(rec, drive__max_torque="1 N m")
+    finding = found(Overlay(weak, {"sprockets/rate": rate}), "drive_copes")
     assert finding.outcome == "fails" and finding.time == pytest.approx(4.0, abs=0.01)
+
+
+def test_a_set_speed_without_a_largest_torque_is_only_measured(rec):
+    finding = found(rec, "drive_copes")
+    assert (finding.outcome, finding.why) == ("not judged", "does not apply")
+    assert finding.value == pytest.approx(float(np.abs(rec["drive/torque"]).max()))
+    assert "efficiency" in finding.note
 
 
 def test_torque_is_held_against_what_the_drive_can_give(rec):

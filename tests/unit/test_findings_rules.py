@@ -99,7 +99,7 @@ def test_findings_can_be_kept_by_a_recorder(rec):
 
     from chainsim.recording.rows import FindingRow
 
-    assert [FindingRow(**asdict(finding)).name for finding in judge(rec)][0] == "balls_stay_seated"
+    assert next(FindingRow(**asdict(finding)).name for finding in judge(rec)) == "balls_stay_seated"
 
 
 def test_a_recording_of_nothing_is_not_judged(rec):

@@ -8,7 +8,8 @@ from chainsim.scenario.filler import Origin
 from chainsim.scenario.json_schema import json_schema
 from chainsim.scenario.read import parse_scenario, read_scenario
 from chainsim.scenario.scenario import Scenario
-from chainsim.scenario.starter import LAYOUTS, starter
+from chainsim.scenario.starter import starter
+from chainsim.scenario.starter_layouts import LAYOUTS
 
 __all__ = [
     "LAYOUTS",

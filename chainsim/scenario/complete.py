@@ -101,8 +101,8 @@ def _fill_balls(filler: Filler, document: Document) -> None:
     if balls is None:
         return
     material = balls.material or "steel"
-    source: Source = "kind" if balls.material else "assumed"
-    filler.fill(("balls", "mass"), ball_mass(material, balls.diameter), source, f"solid {material}")
+    mass = ball_mass(material, balls.diameter)
+    filler.fill(("balls", "mass"), mass, "assumed", f"solid {material}")
     _fill_heights(filler, document, balls)
     if balls.feed.kind != "every pocket":
         demand = document.limits.ball_rate or DEFAULT_BALL_RATE
@@ -141,12 +141,11 @@ def _fill_carriers(filler: Filler, document: Document) -> None:
 def _fill_pocket(filler: Filler, pocket: Pocket, diameter: float) -> None:
     """Give a pocket the proportions of its shape."""
     form = POCKET_FORMS[pocket.shape or "tray"]
-    source: Source = "kind" if pocket.shape else "assumed"
     note = f"shape {pocket.shape or 'tray'}"
     for name in ("floor", "lip", "back"):
         length = getattr(form, name) * diameter
-        filler.fill(("carriers", "pocket", name), length, source, note)
-    filler.fill(("carriers", "pocket", "tilt"), form.tilt, source, note)
+        filler.fill(("carriers", "pocket", name), length, "assumed", note)
+    filler.fill(("carriers", "pocket", "tilt"), form.tilt, "assumed", note)
 
 
 def _fill_drive(filler: Filler, document: Document) -> None:

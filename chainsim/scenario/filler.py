@@ -19,8 +19,8 @@ class Origin(NamedTuple):
     Attributes
     ----------
     source : str
-        `given` in the file, from the `kind` of chain or material, `assumed`, or from the
-        `bench`.
+        `given` in the file, from the `kind` of chain, `assumed` (also where worked out from
+        the rest by a rule of thumb), or from the `bench`.
     low, typical, high : float or None
         Range of the value [SI]; None where the value is no number.
     note : str

@@ -15,8 +15,6 @@ from chainsim.scenario.paths import nearest
 from chainsim.scenario.schema import Document
 from chainsim.scenario.write import as_json, as_toml, values_only
 
-ORDER_OF_SOURCES = ("given", "bench", "kind", "assumed")
-
 
 class Scenario(Document):
     """One lift with every value in SI; attributes are named as the keys of the file.
@@ -130,20 +128,3 @@ class Scenario(Document):
     def resolved_json(self) -> str:
         """Every value in SI and every origin, as JSON."""
         return as_json(self, self._origins)
-
-
-def source_counts(scenario: Scenario) -> dict[str, int]:
-    """How many values are given, from the bench, from a kind, assumed.
-
-    Parameters
-    ----------
-    scenario : Scenario
-        What to count in.
-
-    Returns
-    -------
-    dict of str to int
-        Source -> number of values (dimensionless).
-    """
-    sources = [origin.source for origin in scenario.origins().values()]
-    return {source: sources.count(source) for source in ORDER_OF_SOURCES}  # type: ignore[arg-type]

@@ -1,9 +1,9 @@
 """Smallest gaps between what moves, and between that and what stands.
 
 Counted are the chain with its rollers, the outlines of the pockets, and balls that sit in them,
-against walls, against other strands, and against sprockets that stand outside the loop. What is
-meant to touch is left out: chain on its sprockets and guides, a ball in its own pocket, balls
-against walls (a wall is a surface that balls may touch).
+against walls, chute and trough, against other strands, and against sprockets that stand outside
+the loop. What is meant to touch is left out: chain on its sprockets and guides, a ball in its own
+pocket, balls against walls, chute and trough (surfaces that balls may touch).
 """
 
 from __future__ import annotations
@@ -17,8 +17,14 @@ from chainsim.analysis.carried import carried_balls
 from chainsim.analysis.chain_motion import excursion
 from chainsim.analysis.survey import Survey, survey
 
-SHARE_OF_PITCH = 0.5
-"""Travel of the chain from one looked-at moment to the next [pitches]."""
+N_SPREAD = 100
+"""Moments that are looked at, spread over the run [dimensionless]."""
+
+FINE_STEP, FINE_SPAN = 0.125, 12.0
+"""Travel between further moments, and of all of them, in the middle of steady running [pitches]."""
+
+TINY = 1e-30
+"""Square of a length without meaning [m2]."""
 
 N_MOMENTS = 12
 """Moments at which strands are held against each other, evenly spread; and as many in which they
@@ -49,8 +55,9 @@ class Gap(NamedTuple):
 def smallest_gaps(rec: Any) -> list[Gap]:
     """Smallest gap of every kind of pair that the lift has.
 
-    Looked at once per half pitch of travel, strands against each other at the moments in which
-    they swing inward most, so that a gap may be missed by what the parts move in between.
+    Looked at some moments spread over the run, and some close together in steady running;
+    strands against each other where they swing inward most. So a gap may be missed by what the
+    parts move in between.
 
     Parameters
     ----------
@@ -70,10 +77,15 @@ def smallest_gaps(rec: Any) -> list[Gap]:
 
 
 def _moments(s: Survey) -> np.ndarray:
-    """Sample numbers to look at."""
-    speed = float(np.max(np.abs(s.drive_speed), initial=0.0))
-    step = SHARE_OF_PITCH * s.pitch / (speed * s.interval) if speed > 0.0 else len(s.time)
-    return np.arange(0, len(s.time), max(1, min(int(step), len(s.time))))
+    """Sample numbers to look at: spread over the run, and close together over a few pitches."""
+    even = np.linspace(0, len(s.time) - 1, min(N_SPREAD, len(s.time))).astype(int)
+    if not s.steady:
+        return np.unique(even)
+    window = max(s.steady, key=lambda w: w.stop - w.start)
+    step = max(1, int(FINE_STEP * s.tooth_samples))
+    start = (window.start + window.stop) // 2
+    fine = np.arange(start, min(start + int(FINE_SPAN * s.tooth_samples), window.stop), step)
+    return np.union1d(even, fine)
 
 
 def outline_points(rec: Any, samples: np.ndarray) -> np.ndarray | None:
@@ -111,9 +123,26 @@ def _distance_to_line(points: np.ndarray, line: np.ndarray) -> np.ndarray:
     best = np.full(points.shape[:-1], FAR)
     for a, b in pairwise(line):
         along = b - a
-        share = np.clip(((points - a) @ along) / float(along @ along), 0.0, 1.0)
+        share = np.clip(((points - a) @ along) / max(float(along @ along), TINY), 0.0, 1.0)
         away = points - a - share[..., None] * along
         best = np.fmin(best, np.hypot(away[..., 0], away[..., 1]))
+    return best
+
+
+def _distance_of_outlines(corners: np.ndarray, line: np.ndarray) -> np.ndarray:
+    """Distance of polylines (..., k, 2) from a fixed one (n, 2) [m], shape (..., k).
+
+    Corners of each against the sides of the other; two sides that cross far from any corner
+    are seen only when a corner comes near.
+    """
+    best = _distance_to_line(corners, line)
+    start, along = corners[..., :-1, :], np.diff(corners, axis=-2)
+    square = np.maximum((along**2).sum(axis=-1), TINY)
+    for point in line:
+        share = np.clip(((point - start) * along).sum(axis=-1) / square, 0.0, 1.0)
+        away = point - start - share[..., None] * along
+        best[..., :-1] = np.fmin(best[..., :-1], np.hypot(away[..., 0], away[..., 1]))
+    best[np.isnan(corners[..., 0])] = np.nan
     return best
 
 
@@ -127,21 +156,26 @@ def _smallest(s: Survey, samples: np.ndarray, gap: np.ndarray, parts: str) -> li
 
 
 def _to_walls(s: Survey, samples: np.ndarray) -> list[Gap]:
-    """Chain and carriers against walls."""
-    if not s.scenario.wall:
+    """Chain and carriers against walls, chute and trough."""
+    standing = {f"wall {item.name}": np.asarray(item.points) for item in s.scenario.wall}
+    standing |= {name: s[f"geometry/{name}"] for name in ("chute", "trough") if _stands(s, name)}
+    if not standing:
         return []
     roller, wall = 0.5 * s.scenario.chain.roller_diameter, _pocket_wall(s)
-    corners = outline_points(s, samples)
+    corners, pins = outline_points(s, samples), s.position[samples].astype(float)
     gaps: list[Gap] = []
-    for item in s.scenario.wall:
-        line = np.asarray(item.points, dtype=float)
-        pins = _distance_to_line(s.position[samples].astype(float), line) - roller
-        gaps += _smallest(s, samples, pins, f"chain and wall {item.name}")
+    for name, line in standing.items():
+        gaps += _smallest(s, samples, _distance_to_line(pins, line) - roller, f"chain and {name}")
         if corners is not None:
-            gap = _distance_to_line(corners, line) - wall
-            gap[np.isnan(corners[..., 0])] = np.nan
-            gaps += _smallest(s, samples, gap, f"carriers and wall {item.name}")
+            gap = _distance_of_outlines(corners, line) - wall
+            gaps += _smallest(s, samples, gap, f"carriers and {name}")
     return gaps
+
+
+def _stands(s: Survey, name: str) -> bool:
+    """Whether the lift has such a fixed part."""
+    line = s.channel(f"geometry/{name}")
+    return line is not None and len(line) > 1
 
 
 def _pocket_wall(s: Survey) -> float:
@@ -184,7 +218,7 @@ def _pin_to_links(pins: np.ndarray, chain: np.ndarray) -> np.ndarray:
     """Distance of pins (n, a, 2) from the links between pins (n, b, 2) [m], shape (n, a)."""
     start, along = chain[:, None, :-1], (chain[:, 1:] - chain[:, :-1])[:, None]
     away = pins[:, :, None] - start
-    square = np.maximum((along**2).sum(axis=-1), 1e-30)
+    square = np.maximum((along**2).sum(axis=-1), TINY)
     share = np.clip((away * along).sum(axis=-1) / square, 0.0, 1.0)
     left = away - share[..., None] * along
     return np.sqrt((left**2).sum(axis=-1).min(axis=2))

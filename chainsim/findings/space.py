@@ -103,7 +103,7 @@ def parts_keep_clear(s: Survey) -> Finding:
         )
         for gap in gaps
     ]
-    unseen = "" if extreme is not None else "looked at once per half pitch of travel"
+    unseen = "" if extreme is not None else "looked at some hundred moments"
     return judged(measures, s.scenario.limits.reserve, unseen)
 
 

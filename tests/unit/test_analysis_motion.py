@@ -300,3 +300,12 @@ def test_summary_is_flat_and_every_number_has_a_unit(rec):
     assert named - {"stop_reason", "complete"} <= {*UNITS, *families}
     assert row["balls_delivered"] == sum(ball.fate == "delivered" for ball in rec.balls)
     assert row["off_resonance.outcome"] == "close"
+
+
+def test_gap_to_a_chute_is_that_of_its_lip_too(rec):
+    """A chute that points at the strand: its lip comes nearer a pocket's side than any corner."""
+    chute = np.array([[0.20, 0.103], [0.0372, 0.103]])
+    by_parts = {g.parts: g for g in smallest_gaps(Overlay(rec, {"geometry/chute": chute}))}
+    # On the straight strand the lip of a pocket stands 22 mm out of the pins, which swing inward.
+    nearest = 0.0372 - SEAT_RADIUS - 0.022 - 0.00075
+    assert nearest - 1e-5 <= by_parts["carriers and chute"].size < nearest + 0.0011

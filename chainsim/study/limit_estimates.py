@@ -11,6 +11,9 @@ from chainsim.study.heights import height_of
 from chainsim.study.limit_questions import takeup_sprocket
 
 
+_ROUNDING = 1e-6  # a strand that holds 13 balls to rounding holds 13, not 14
+
+
 @dataclass(frozen=True)
 class Estimate:
     """A closed-form estimate of a limit.
@@ -78,6 +81,25 @@ def carried_mass(scenario: Any, height: float | None = None) -> float:
     return pockets * fill * balls.mass
 
 
+def fullest_mass(scenario: Any) -> float:
+    """Mass of the balls on the carrying strand at its fullest moment.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        The lift.
+
+    Returns
+    -------
+    float
+        Mass [kg]: a strand that holds 5.8 balls on average holds 6 of them most of the time.
+    """
+    if scenario.balls is None:
+        return 0.0
+    balls = carried_mass(scenario) / scenario.balls.mass
+    return math.ceil(balls - _ROUNDING) * scenario.balls.mass
+
+
 def wrapped_mass(scenario: Any, sprocket: Any) -> float:
     """Mass of the chain and carriers on half a turn of a sprocket.
 
@@ -107,12 +129,12 @@ def _takeup(scenario: Any) -> Estimate:
     sprocket = takeup_sprocket(scenario)
     tail = _tail(scenario)
     driven: Literal["head", "tail"] = "tail" if scenario.drive.sprocket == tail.name else "head"
-    payload = carried_mass(scenario)
+    payload = fullest_mass(scenario)
     moving = sprocket.mount.mass if sprocket.mount.kind in ("spring", "counterweight") else 0.0
     wrap = wrapped_mass(scenario, sprocket)
     if sprocket is tail:
         hung = least_hung_weight(payload, driven)
-        text = "weight of all that hangs = weight of the balls on the carrying strand"
+        text = "weight of all that hangs = weight of the balls on the fullest carrying strand"
         if driven == "head":
             text = "driven at the head, any hung weight keeps the carrying strand taut"
         pull = hung - wrap - moving

@@ -90,6 +90,7 @@ def synthetic_recording(
     chain_speed: float = 0.15,
     spilled_ball: int | None = None,
     noise: float = 0.02,
+    jitter: float = 0.0,
     seed: int = 1,
     recorder: Recorder | None = None,
 ) -> Recording:
@@ -109,6 +110,9 @@ def synthetic_recording(
         Number of a ball that falls from its pocket at six tenths of the height.
     noise : float
         Standard deviation of the tensions' noise [N].
+    jitter : float
+        Standard deviation of noise of the pins' velocities [m/s]; a thousandth of it [m] of their
+        positions. Spoils the exact pitch; for tests of size and speed.
     seed : int
         Seed of the noise [dimensionless].
     recorder : Recorder, optional
@@ -124,6 +128,9 @@ def synthetic_recording(
     height = strand_links * PITCH
     time = np.arange(round(duration * rate) + 1) / rate
     channels, rides = _channels(time, strand_links, chain_speed, spilled_ball, noise, seed)
+    rng = np.random.default_rng(seed)
+    for name, scale in (("pins/position", 1e-3 * jitter), ("pins/velocity", jitter)):
+        channels[name] = channels[name] + scale * rng.standard_normal(channels[name].shape)
     text = TEXT.format(
         links=links, height=height * 1e3, speed=chain_speed, duration=duration, rate=rate
     )

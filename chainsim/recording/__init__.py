@@ -1,5 +1,6 @@
 """Recordings of runs: written while they go on, in memory or in HDF5, read by everything else."""
 
+from chainsim.recording.copying import save_recording
 from chainsim.recording.memory import MemoryRecorder
 from chainsim.recording.reader import open_recording
 from chainsim.recording.recording import Recording
@@ -15,4 +16,5 @@ __all__ = [
     "Static",
     "StrandRow",
     "open_recording",
+    "save_recording",
 ]

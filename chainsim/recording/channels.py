@@ -49,12 +49,12 @@ class Channel(NamedTuple):
 
 
 _TRAJECTORIES = (
-    Channel("pins/position", ("pin", "axis"), "m", "positions of the pins", "f4", 0.62, True),
-    Channel("pins/velocity", ("pin", "axis"), "m s-1", "velocities of the pins", "f4", 0.85, True),
-    Channel("links/tension", ("link",), "N", "mean tension of the links", "f4", 0.86, True),
-    Channel("balls/position", ("slot", "axis"), "m", "centers of the balls", "f4", 0.33, True),
+    Channel("pins/position", ("pin", "axis"), "m", "positions of the pins", "f4", 0.58, True),
+    Channel("pins/velocity", ("pin", "axis"), "m s-1", "velocities of the pins", "f4", 0.77, True),
+    Channel("links/tension", ("link",), "N", "mean tension of the links", "f4", 0.77, True),
+    Channel("balls/position", ("slot", "axis"), "m", "centers of the balls", "f4", 0.6, True),
     Channel(
-        "balls/velocity", ("slot", "axis"), "m s-1", "velocities of the balls", "f4", 0.4, True
+        "balls/velocity", ("slot", "axis"), "m s-1", "velocities of the balls", "f4", 0.75, True
     ),
     Channel(
         "balls/acceleration",
@@ -62,7 +62,7 @@ _TRAJECTORIES = (
         "m s-2",
         "mean accelerations of the balls along n and t of their carrier",
         "f4",
-        0.45,
+        0.78,
         True,
     ),
     Channel("balls/angle", ("slot",), "rad", "rolling angles of the balls", "f8", 0.4, True),
@@ -70,9 +70,9 @@ _TRAJECTORIES = (
 
 _BALLS = (
     Channel(
-        "balls/seat_reserve", ("slot",), "m s-2", "seat reserve, least in the interval", "f4", 0.4
+        "balls/seat_reserve", ("slot",), "m s-2", "seat reserve, least in the interval", "f4", 0.78
     ),
-    Channel("balls/raw_peak", ("slot",), "m s-2", "largest raw acceleration", "f4", 0.45),
+    Channel("balls/raw_peak", ("slot",), "m s-2", "largest raw acceleration", "f4", 0.8),
     Channel("balls/play", ("slot",), "m", "play of the balls in their pockets", "f4", 0.1),
     Channel("balls/number", ("slot",), "1", "numbers of the balls, -1 in empty slots", "i4", 0.02),
     Channel("balls/pocket", ("slot",), "1", "carriers that hold the balls, -1 none", "i4", 0.02),

@@ -119,6 +119,10 @@ class Recording:
         """Return the labels along an axis, such as ``"sprocket"``; numbers as texts."""
         return self._store.labels(dim)
 
+    def rows(self, table: str) -> list[Any]:
+        """Return the rows of a table, such as ``"events"``; none if it was never written."""
+        return to_rows(table, self._store.table(table))
+
     def close(self) -> None:
         """Close the file behind it, if there is one; reading opens it again."""
         self._store.close()
@@ -156,34 +160,33 @@ class Recording:
     @cached_property
     def strands(self) -> tuple[StrandRow, ...]:
         """Strands in the order of the arrays."""
-        rows = to_rows("geometry/strands", self._store.table("geometry/strands"))
+        rows = self.rows("geometry/strands")
         return tuple(row._replace(carrying=bool(row.carrying)) for row in rows)
 
     @property
     def events(self) -> list[Event]:
         """Events in the order of time; none before the run was finished."""
-        return to_rows("events", self._store.table("events"))
+        return self.rows("events")
 
     @property
     def balls(self) -> list[BallRow]:
         """One row per ball; none before the run was finished."""
-        return to_rows("balls/table", self._store.table("balls/table"))
+        return self.rows("balls/table")
 
     @property
     def extremes(self) -> dict[str, Extreme]:
         """Worst values over every inner step, by name."""
-        rows = to_rows("extremes", self._store.table("extremes"))
-        return {row.name: row for row in rows}
+        return {row.name: row for row in self.rows("extremes")}
 
     @property
     def modes(self) -> list[ModeRow]:
         """Natural modes of the lift at rest."""
-        return to_rows("modes", self._store.table("modes"))
+        return self.rows("modes")
 
     @property
     def findings(self) -> list[FindingRow]:
         """Findings as they were judged at the end of the run."""
-        return to_rows("findings", self._store.table("findings"))
+        return self.rows("findings")
 
     @cached_property
     def scenario(self) -> Scenario:

@@ -1,9 +1,10 @@
 """Smallest gaps between what moves, and between that and what stands.
 
 Counted are the chain with its rollers, the outlines of the pockets, and balls that sit in them,
-against walls, chute and trough, against other strands, and against sprockets that stand outside
-the loop. What is meant to touch is left out: chain on its sprockets and guides, a ball in its own
-pocket, balls against walls, chute and trough (surfaces that balls may touch).
+against walls and the chute, against other strands, and against sprockets that stand outside the
+loop. What is meant to touch is left out: chain on its sprockets and guides, a ball in its own
+pocket, balls against walls and chute (surfaces that balls may touch), pockets that reach into the
+trough.
 """
 
 from __future__ import annotations
@@ -156,9 +157,11 @@ def _smallest(s: Survey, samples: np.ndarray, gap: np.ndarray, parts: str) -> li
 
 
 def _to_walls(s: Survey, samples: np.ndarray) -> list[Gap]:
-    """Chain and carriers against walls, chute and trough."""
+    """Chain and carriers against walls and chute."""
     standing = {f"wall {item.name}": np.asarray(item.points) for item in s.scenario.wall}
-    standing |= {name: s[f"geometry/{name}"] for name in ("chute", "trough") if _stands(s, name)}
+    chute = s.channel("geometry/chute")
+    if chute is not None and len(chute) > 1:
+        standing["chute"] = chute
     if not standing:
         return []
     roller, wall = 0.5 * s.scenario.chain.roller_diameter, _pocket_wall(s)
@@ -170,12 +173,6 @@ def _to_walls(s: Survey, samples: np.ndarray) -> list[Gap]:
             gap = _distance_of_outlines(corners, line) - wall
             gaps += _smallest(s, samples, gap, f"carriers and {name}")
     return gaps
-
-
-def _stands(s: Survey, name: str) -> bool:
-    """Whether the lift has such a fixed part."""
-    line = s.channel(f"geometry/{name}")
-    return line is not None and len(line) > 1
 
 
 def _pocket_wall(s: Survey) -> float:

@@ -9,6 +9,9 @@ import numpy as np
 from chainsim.analysis.carried import carried_balls
 from chainsim.analysis.survey import Survey, survey
 
+MOST_SAMPLES = 1000
+"""Samples, evenly spread, that a mean tilt is taken from [dimensionless]."""
+
 
 class Tilt(NamedTuple):
     """Tilt of one loaded carrier's link against the straight line of its strand.
@@ -45,25 +48,25 @@ def ball_link_lean(rec: Any) -> np.ndarray:
         Angle [rad], positive counterclockwise; NaN where the ball rides on no carrying strand.
     """
     s = survey(rec)
-    return s.once(("ball_link_lean",), lambda: _ball_link_lean(s))
+    return s.once(("ball_link_lean",), lambda: _ball_link_lean(s, np.arange(len(s.time))))
 
 
-def _ball_link_lean(s: Survey) -> np.ndarray:
-    """Work out `ball_link_lean`."""
-    pocket = s["balls/pocket"]
-    is_held = carried_balls(s) & (pocket >= 0)
+def _ball_link_lean(s: Survey, samples: np.ndarray) -> np.ndarray:
+    """Work out `ball_link_lean` for some samples."""
+    pocket = s["balls/pocket"][samples]
+    is_held = carried_balls(s)[samples] & (pocket >= 0)
     link = np.where(is_held, s["geometry/carrier_link"][pocket], 0)
-    sample = np.arange(len(s.time))[:, None]
-    along = s.position[sample, (link + 1) % s.n_pins] - s.position[sample, link]
+    row = samples[:, None]
+    along = s.position[row, (link + 1) % s.n_pins] - s.position[row, link]
     lean = np.full(link.shape, np.nan)
     for k in s.carrying:
         pins = s.strand_pins[k]
-        row = sample[:, 0]
-        chord = s.position[row, pins.last] - s.position[row, pins.first]
+        first, last = pins.first[samples], pins.last[samples]
+        chord = s.position[samples, last] - s.position[samples, first]
         back = np.conj(chord[:, 0] + 1j * chord[:, 1])[:, None]
         turn = (along[..., 0] + 1j * along[..., 1]) * back
-        station = (link - pins.first[:, None]) % s.n_pins
-        is_here = is_held & (station < pins.n_links[:, None])
+        station = (link - first[:, None]) % s.n_pins
+        is_here = is_held & (station < pins.n_links[samples, None])
         lean[is_here] = np.angle(turn[is_here])
     return lean
 
@@ -86,10 +89,12 @@ def carrier_tilts(rec: Any) -> list[Tilt]:
     s = survey(rec)
     if not s.has("balls/pocket", "geometry/carrier_link"):
         return []
-    lean, pocket = ball_link_lean(s), s["balls/pocket"]
-    chosen = np.isfinite(lean) & (s.is_steady if s.steady else np.ones(len(s.time), bool))[:, None]
+    samples = np.flatnonzero(s.is_steady) if s.steady else np.arange(len(s.time))
+    samples = samples[:: max(1, len(samples) // MOST_SAMPLES)]
+    lean, pocket = _ball_link_lean(s, samples), s["balls/pocket"][samples]
+    chosen = np.isfinite(lean)
     below = (s["geometry/carrier_link"][pocket] - 1) % s.n_pins
-    tension = np.take_along_axis(s.tension, np.where(chosen, below, 0), axis=1)
+    tension = s.tension[samples[:, None], np.where(chosen, below, 0)]
     tilts = []
     for carrier in np.unique(pocket[chosen]):
         here = chosen & (pocket == carrier)

@@ -20,10 +20,10 @@ from chainsim.findings.finding import (
     Finding,
     Measure,
     add_note,
-    amount,
     judged,
     unjudged,
 )
+from chainsim.findings.wording import amount
 
 LEAST_DELIVERIES = 5
 """Fewest deliveries in steady running from which a rate is judged [dimensionless]."""

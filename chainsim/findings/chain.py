@@ -16,11 +16,11 @@ from chainsim.findings.finding import (
     Finding,
     Measure,
     add_note,
-    amount,
     judged,
     unjudged,
 )
 from chainsim.findings.places import on_sprocket, on_strand
+from chainsim.findings.wording import amount
 
 ONE_SEAT = 1.0
 

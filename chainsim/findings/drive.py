@@ -21,11 +21,11 @@ from chainsim.findings.finding import (
     Finding,
     Measure,
     add_note,
-    amount,
     judged,
     unjudged,
 )
 from chainsim.findings.places import on_sprocket
+from chainsim.findings.wording import amount
 
 RUN_BACK_PITCHES = 1.0
 """Run-back that counts as none [pitches]: backlash and the give of chain and shaft."""

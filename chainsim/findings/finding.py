@@ -6,28 +6,12 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
-from chainsim.units import format_si
+from chainsim.findings.wording import amount
 
 HOLDS, CLOSE, FAILS, NOT_JUDGED = "holds", "close", "fails", "not judged"
 DOES_NOT_APPLY = "does not apply"
 NOT_ENOUGH_DATA = "not enough data"
 OUTSIDE_RANGE = "outside validated range"
-
-
-KINDS = {
-    "m": "length",
-    "s": "time",
-    "N": "force",
-    "N m": "torque",
-    "m s-2": "acceleration",
-    "m s-1": "speed",
-    "rad": "angle",
-    "rad s-1": "angular_speed",
-    "Hz": "frequency",
-    "W": "power",
-    "J": "energy",
-}
-"""Unit of a value and the kind that `chainsim.units` prints it as."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -233,26 +217,6 @@ def _notes(*notes: str) -> str:
 def _known(value: float) -> float | None:
     """The value, or None where it is not finite."""
     return float(value) if math.isfinite(value) else None
-
-
-def amount(value: float, unit: str) -> str:
-    """A value in a unit that reads well.
-
-    Parameters
-    ----------
-    value : float
-        The value in `unit`.
-    unit : str
-        Its unit, ``"1"`` where dimensionless.
-
-    Returns
-    -------
-    str
-        Such as ``"3.2 mm"``, to three digits.
-    """
-    rounded = float(f"{value:.3g}")
-    kind = KINDS.get(unit)
-    return format_si(rounded, kind) if kind else f"{rounded:g} {unit}".removesuffix(" 1")
 
 
 def _told(measure: Measure) -> str:

@@ -1,5 +1,6 @@
 """Tension along a strand: means that stand still, slack, tight and slack side."""
 
+import weakref
 from types import SimpleNamespace
 
 import numpy as np
@@ -7,6 +8,7 @@ import pytest
 
 from chainsim.analysis import (
     resting_tension,
+    run_summary,
     sides_of_drive,
     station_tension,
     strand_ends,
@@ -181,3 +183,12 @@ def test_disturbances_are_not_steady_running():
     knock = [SimpleNamespace(time=6.0, kind="knock", subject="", value=1.0, unit="", text="")]
     shaken = survey(Overlay(rec, events=knock))
     assert [round(float(shaken.time[w.start]), 1) for w in shaken.steady] == [2.0, 8.0]
+
+
+def test_what_is_kept_of_a_recording_goes_with_it():
+    rec = synthetic_recording(duration=3.0)
+    assert survey(rec).position is survey(rec).position
+    alive = weakref.ref(rec)
+    run_summary(rec)
+    del rec
+    assert alive() is None

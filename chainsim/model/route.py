@@ -18,6 +18,7 @@ from scipy.optimize import brentq
 
 from chainsim.errors import LayoutError
 from chainsim.model.bow import bow_out
+from chainsim.model.closing import closing_travel
 from chainsim.model.tangents import Route, Wheel, route
 from chainsim.model.walk import Walk, entry_place, evenly, on_wheel, walk_round
 
@@ -103,7 +104,7 @@ def lay_chain(
     movable = any(wheel.movable is not None for wheel in wheels)
     travel = np.zeros(len(wheels))
     if movable and len(wheels) > 1:
-        travel = _closing_travel(wheels, pitch, n_links, down)
+        travel = closing_travel(wheels, pitch, n_links, down)
         wheels = tuple(w.moved(d) for w, d in zip(wheels, travel, strict=True))
     path = route(wheels, pitch, down)
     if len(wheels) == 1:
@@ -113,49 +114,6 @@ def lay_chain(
     if movable or surplus <= 0.0:
         return _number_pins(path, _lay_taut(path, n_links, walk), travel, surplus)
     return _number_pins(path, _lay_slack(path, n_links, down), travel, surplus)
-
-
-def _closing_travel(
-    wheels: tuple[Wheel, ...], pitch: float, n_links: int, down: tuple[float, float]
-) -> np.ndarray:
-    """Return the shift of each axle [m] at which the loop closes exactly taut."""
-    slope = _length_slopes(wheels, pitch, down)
-    largest = float(np.abs(slope).max())
-    if largest < 1e-3:
-        raise LayoutError("the movable axles do not change the length of the loop")
-    share = slope / largest
-
-    def excess(shift: float) -> float:
-        moved = tuple(w.moved(shift * part) for w, part in zip(wheels, share, strict=True))
-        walk = walk_round(route(moved, pitch, down), n_links, 0, pitch)
-        return walk.gap - walk.links_left * pitch
-
-    rate = float((slope * share).sum())
-    guess = (n_links - route(wheels, pitch, down).links) * pitch / rate
-    try:
-        for width in (0.25, 1.0, 3.0):
-            low, high = guess - width * pitch, guess + width * pitch
-            if excess(low) < 0.0 < excess(high):
-                return float(brentq(excess, low, high, xtol=1e-15, rtol=8.9e-16)) * share
-    except LayoutError as error:
-        raise LayoutError(f"{n_links} links do not close this loop: {error}") from error
-    raise LayoutError(f"no travel of the movable axles closes the loop taut with {n_links} links")
-
-
-def _length_slopes(
-    wheels: tuple[Wheel, ...], pitch: float, down: tuple[float, float]
-) -> np.ndarray:
-    """Return how fast the loop grows as each axle is shifted (dimensionless), 0 if fixed."""
-    slope = np.zeros(len(wheels))
-    small = 1e-4 * pitch
-    for k, wheel in enumerate(wheels):
-        if wheel.movable is not None:
-            ends = [
-                route((*wheels[:k], wheel.moved(shift), *wheels[k + 1 :]), pitch, down).links
-                for shift in (-small, small)
-            ]
-            slope[k] = (ends[1] - ends[0]) * pitch / (2.0 * small)
-    return slope
 
 
 def _lay_taut(path: Route, n_links: int, walk: Walk) -> Walk:

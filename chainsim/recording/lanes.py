@@ -10,9 +10,9 @@ from chainsim.recording.channels import Channel
 from chainsim.recording.packing import Packer
 from chainsim.recording.tail import Rest
 
-NARROW_CHUNK = 128 * 1024
+NARROW_CHUNK = 256 * 1024
 """Size [bytes] up to which the chunks of a narrow channel are made longer: fewer, larger writes."""
-LONGEST = 8
+LONGEST = 16
 """Most blocks in a chunk [dimensionless]; bounds what a flush puts into the tail."""
 
 

@@ -66,26 +66,29 @@ class Packer:
         if planes.shape[1] < SMALL_PLANE:
             return _deflater.compress(planes, LEVEL)
         self._stored_for = self._stored_for or [0] * size
-        parts = [_ZLIB_HEADER]
+        parts: list[bytes | memoryview] = [_ZLIB_HEADER]
         for index, plane in enumerate(planes):
             parts += self._plane(index, plane)
         return b"".join([*parts, _END, struct.pack(">I", _deflater.adler32(planes))])
 
-    def _plane(self, index: int, plane: np.ndarray) -> list[bytes]:
+    def _plane(self, index: int, plane: np.ndarray) -> list[bytes | memoryview]:
         if self._stored_for[index]:
             self._stored_for[index] -= 1
             return _stored(plane)
         deflate = _deflater.compressobj(LEVEL, zlib.DEFLATED, -zlib.MAX_WBITS)
-        parts = [deflate.compress(plane), deflate.flush(zlib.Z_SYNC_FLUSH)]
+        parts: list[bytes | memoryview] = [
+            deflate.compress(plane),
+            deflate.flush(zlib.Z_SYNC_FLUSH),
+        ]
         if sum(map(len, parts)) > WORTHWHILE * len(plane):
             self._stored_for[index] = TRY_AGAIN
         return parts
 
 
-def _stored(plane: np.ndarray) -> list[bytes]:
+def _stored(plane: np.ndarray) -> list[bytes | memoryview]:
     """Stored blocks of deflate: type 00, length, its complement, and the bytes."""
-    parts = []
+    parts: list[bytes | memoryview] = []
     for start in range(0, len(plane), _STORED_BLOCK):
-        piece = plane[start : start + _STORED_BLOCK].tobytes()
+        piece = plane.data[start : start + _STORED_BLOCK]
         parts += [struct.pack("<BHH", 0, len(piece), len(piece) ^ 0xFFFF), piece]
     return parts

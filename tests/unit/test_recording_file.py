@@ -177,18 +177,18 @@ def test_flush_saves_what_does_not_fill_a_chunk(tmp_path):
 @pytest.mark.parametrize("content", [b"", b"PK\x03\x04", b"nothing of ours"])
 def test_a_damaged_tail_is_left_out(tmp_path, content):
     recorder = begun(tmp_path / "foyer.lift.h5")
-    recorder.append(torques(0, 2500))
+    recorder.append(torques(0, 4500))
     partial = recorder.close()
     tail_path(partial).write_bytes(content)
-    assert len(open_recording(partial).time) == 2048
+    assert len(open_recording(partial).time) == 4096
 
 
 def test_a_tail_that_does_not_fit_is_an_error(tmp_path):
     recorder = begun(tmp_path / "foyer.lift.h5")
-    recorder.append(torques(0, 2500))
+    recorder.append(torques(0, 4500))
     partial = recorder.close()
     rests = read_tail(partial)
-    wrong = rests["drive/torque"]._replace(values=np.zeros((452, 2), np.float32))
+    wrong = rests["drive/torque"]._replace(values=np.zeros((404, 2), np.float32))
     write_tail(partial, rests | {"drive/torque": wrong})
     with pytest.raises(RecordingError, match="'drive/torque' cannot be read"):
         open_recording(partial)["drive/torque"]
@@ -406,9 +406,9 @@ def test_a_closed_recorder_says_so(tmp_path):
 
 def test_recorder_keeps_no_more_than_a_chunk_per_channel(tmp_path):
     recorder = begun(tmp_path / "foyer.lift.h5")
-    for first in range(0, 20 * 256, 256):
+    for first in range(0, 40 * 256, 256):
         recorder.append(torques(first, 256))
-    assert sum(len(lane.buffer) for lane in recorder._lanes.values()) == 2 * 2048
+    assert sum(len(lane.buffer) for lane in recorder._lanes.values()) == 2 * 4096
 
 
 # Packing

@@ -6,6 +6,8 @@ from types import SimpleNamespace
 
 import numpy as np
 
+from chainsim.findings import judge
+
 TABLES = ("events", "balls", "extremes", "modes", "findings", "strands", "scenario")
 TRAITS = ("time", "stop_reason", "complete")
 
@@ -114,3 +116,24 @@ def bare_strand(place, pitch, tension=1.0, n_samples=2, speed=0.0, interval=0.01
         SimpleNamespace(name="b-a", start="b", end="a", carrying=False),
     )
     return Bare(scenario, strands, channels, interval * np.arange(n_samples))
+
+
+def found(rec, name):
+    """Finding of this name."""
+    return next(finding for finding in judge(rec) if finding.name == name)
+
+
+def changed(rec, **values):
+    """Recording of a scenario with other values; two underscores stand for a dot in a key."""
+    keys = {key.replace("__", "."): value for key, value in values.items()}
+    return Overlay(rec, scenario=rec.scenario.with_values(keys))
+
+
+def extreme(value, time=3.0, place="somewhere"):
+    """Worst value over every inner step."""
+    return SimpleNamespace(value=value, unit="", time=time, place=place)
+
+
+def event(time, kind):
+    """Something that happened."""
+    return SimpleNamespace(time=time, kind=kind, subject="", value=np.nan, unit="", text="")

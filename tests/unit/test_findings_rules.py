@@ -9,7 +9,7 @@ import pytest
 from chainsim.findings import GROUPS, Finding, Measure, judge, situations, verdict
 from chainsim.findings.finding import judged, unjudged
 from tests.synthetic import synthetic_recording
-from tests.unit.overlay import Overlay
+from tests.unit.overlay import Overlay, event
 
 # Names in the order and the groups of the job: balls, chain, space, drive.
 NAMES = {
@@ -105,10 +105,6 @@ def test_findings_can_be_kept_by_a_recorder(rec):
 def test_a_recording_of_nothing_is_not_judged(rec):
     nothing = Overlay(rec, {"drive/set_speed": None}, time=np.zeros(1))
     assert {finding.why for finding in judge(nothing)} == {"not enough data"}
-
-
-def event(time, kind):
-    return SimpleNamespace(time=time, kind=kind, subject="", value=np.nan, unit="", text="")
 
 
 def test_situations_of_a_plain_run(rec):

@@ -66,7 +66,7 @@ def map_figure(shown: Map, line: Sequence[tuple[float, float]] = (), line_text: 
 
 def _fill(axes: Axes, shown: Map) -> None:
     for i, j in np.ndindex(shown.outcome.shape):
-        word, reserve = shown.outcome[i, j], shown.reserve[i, j]
+        word, reserve = str(shown.outcome[i, j]), float(shown.reserve[i, j])
         share = 0.0 if word == "fails" or not np.isfinite(reserve) else min(max(reserve, 0.0), 1.0)
         axes.add_patch(
             Rectangle(

@@ -27,7 +27,7 @@ from chainsim.study.tolerances import (
     result_values,
 )
 
-SHOWN = 40
+SHOWN = 20
 """Most variants and failures in a table [dimensionless]."""
 MAP_TEXT = (
     "Least margin of any finding, as a share of that finding's own scale. "
@@ -87,7 +87,7 @@ def counts_text(rows: list[Row | None]) -> str:
 def ranking_table(sweep: Sweep, ranked: list[Ranked]) -> tuple[tuple[str, ...], list[tuple]]:
     """Headings and rows of the table of best variants."""
     axes = [axis.name for axis in sweep.plan.axes]
-    headings = ("place", *axes, "outcome", "weakest finding", "its reserve")
+    headings = ("place", *short_names(axes), "outcome", "weakest finding", "its reserve")
     table = [
         (
             entry.place,
@@ -99,6 +99,20 @@ def ranking_table(sweep: Sweep, ranked: list[Ranked]) -> tuple[tuple[str, ...], 
         for entry in ranked[:SHOWN]
     ]
     return headings, table
+
+
+def short_names(names: list[str]) -> list[str]:
+    """Last parts of dotted keys, with as many parts as tell them apart."""
+    shown = []
+    for name in names:
+        parts = name.split(".")
+        others = [other.split(".") for other in names if other != name]
+        length = next(
+            n for n in range(1, len(parts) + 1)
+            if n == len(parts) or all(other[-n:] != parts[-n:] for other in others)
+        )  # fmt: skip
+        shown.append(" ".join(parts[-length:]).replace("_", " "))
+    return shown
 
 
 def outcome_cell(word: str) -> Markup:

@@ -10,7 +10,6 @@ from chainsim.closed_forms import growth_at_tip, least_hung_weight, least_liftin
 from chainsim.study.heights import height_of
 from chainsim.study.limit_questions import takeup_sprocket
 
-
 _ROUNDING = 1e-6  # a strand that holds 13 balls to rounding holds 13, not 14
 
 

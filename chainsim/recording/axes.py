@@ -37,7 +37,7 @@ def axis_labels(dim: str, length: int, static: Static | None) -> np.ndarray:
     Returns
     -------
     ndarray, shape (length,)
-        Texts where the axis has names, numbers from 0 where it has not.
+        Texts where the axis has names, numbers from 0 where it has not [dimensionless].
     """
     named: dict[str, tuple[str, ...]] = {
         "axis": AXES,

@@ -92,7 +92,7 @@ def write_scale(group: h5py.Group, name: str, labels: np.ndarray, long_name: str
     name : str
         Name of the axis.
     labels : ndarray, shape (n,)
-        Texts or numbers.
+        Texts or numbers [dimensionless].
     long_name : str
         What the labels are.
 
@@ -137,8 +137,8 @@ def write_table(root: h5py.File, name: str, table: Table, columns: dict[str, Any
         Path of the group.
     table : Table
         Its description.
-    columns : dict of str to ndarray or Choice
-        Its columns, each with one value per row.
+    columns : dict of str to ndarray, shape (n_rows,), or Choice
+        Its columns, each in its unit.
     """
     if name in root:
         del root[name]

@@ -51,7 +51,8 @@ class Recorder(ABC):
         scenario : Scenario
             What is simulated.
         geometry : mapping of str to ndarray
-            Shapes of the fixed parts by dataset path, as listed in the geometry table.
+            Outlines and sizes of the fixed parts by dataset path; shape and unit of each are in
+            the geometry table.
         static : Static
             Names of sprockets and strands, and further root attributes.
 

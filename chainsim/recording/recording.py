@@ -86,7 +86,7 @@ class Recording:
         Returns
         -------
         ndarray, shape (n_samples, ...)
-            Its values in the unit that `unit` tells.
+            Its values, in the unit that `unit` tells.
 
         Raises
         ------
@@ -102,25 +102,80 @@ class Recording:
         return list(self._names)
 
     def unit(self, name: str) -> str:
-        """Return the unit of a dataset, ``"1"`` where it is dimensionless."""
+        """Return the unit of a dataset.
+
+        Parameters
+        ----------
+        name : str
+            Path of the dataset.
+
+        Returns
+        -------
+        str
+            Its unit; ``"1"`` where it is dimensionless.
+        """
         return shape(name).unit if name.startswith("geometry/") else channel(name).unit
 
     def dims(self, name: str) -> tuple[str, ...]:
-        """Return the names of the axes of a dataset."""
+        """Return the names of the axes of a dataset.
+
+        Parameters
+        ----------
+        name : str
+            Path of the dataset.
+
+        Returns
+        -------
+        tuple of str
+            One name per axis; the first of a channel is ``"time"``.
+        """
         if name.startswith("geometry/"):
             return shape(name).dims
         return (TIME.path,) if name == TIME.path else (TIME.path, *channel(name).dims)
 
     def long_name(self, name: str) -> str:
-        """Return what a dataset is, in a few words."""
+        """Return what a dataset is.
+
+        Parameters
+        ----------
+        name : str
+            Path of the dataset.
+
+        Returns
+        -------
+        str
+            A few words.
+        """
         return shape(name).long_name if name.startswith("geometry/") else channel(name).long_name
 
     def labels(self, dim: str) -> tuple[str, ...]:
-        """Return the labels along an axis, such as ``"sprocket"``; numbers as texts."""
+        """Return the labels along an axis.
+
+        Parameters
+        ----------
+        dim : str
+            Name of the axis, such as ``"sprocket"``.
+
+        Returns
+        -------
+        tuple of str
+            Its labels, numbers as texts; none where no dataset has this axis.
+        """
         return self._store.labels(dim)
 
     def rows(self, table: str) -> list[Any]:
-        """Return the rows of a table, such as ``"events"``; none if it was never written."""
+        """Return the rows of a table.
+
+        Parameters
+        ----------
+        table : str
+            Path of the table, such as ``"events"``.
+
+        Returns
+        -------
+        list
+            Its rows as named tuples; none if it was never written.
+        """
         return to_rows(table, self._store.table(table))
 
     def close(self) -> None:
@@ -214,13 +269,39 @@ class Recording:
         return to_xarray(self)
 
     def export_csv(self, folder: str | Path, **options: Any) -> list[Path]:
-        """Write it as CSV files (see `chainsim.recording.csv_files.export_csv`)."""
+        """Write it as CSV files.
+
+        Parameters
+        ----------
+        folder : str or Path
+            Where to.
+        **options : object
+            As of `chainsim.recording.csv_files.export_csv`.
+
+        Returns
+        -------
+        list of Path
+            The files.
+        """
         from chainsim.recording.csv_files import export_csv
 
         return export_csv(self, folder, **options)
 
     def export_mat(self, path: str | Path, **options: Any) -> Path:
-        """Write it as a MAT file (see `chainsim.recording.export.export_mat`)."""
+        """Write it as a MAT file.
+
+        Parameters
+        ----------
+        path : str or Path
+            Path of the file.
+        **options : object
+            As of `chainsim.recording.export.export_mat`.
+
+        Returns
+        -------
+        Path
+            The file.
+        """
         from chainsim.recording.export import export_mat
 
         return export_mat(self, path, **options)

@@ -170,8 +170,8 @@ def to_columns(name: str, rows: Iterable[Any]) -> dict[str, np.ndarray | Choice]
 
     Returns
     -------
-    dict of str to ndarray or Choice
-        Columns by field name, each with one value per row.
+    dict of str to ndarray, shape (n_rows,), or Choice
+        Columns by field name, each in its unit.
     """
     table = TABLES[name]
     listed = list(rows)
@@ -188,8 +188,8 @@ def to_rows(name: str, columns: Mapping[str, np.ndarray | Choice]) -> list[Any]:
     ----------
     name : str
         Name of the table.
-    columns : mapping of str to ndarray or Choice
-        Columns by field name; none for a table that was never written.
+    columns : mapping of str to ndarray, shape (n_rows,), or Choice
+        Columns by field name, each in its unit; none for a table that was never written.
 
     Returns
     -------

@@ -118,7 +118,7 @@ def joined(values: np.ndarray, rest: Rest | None) -> np.ndarray:
     Returns
     -------
     ndarray, shape (n or more, ...)
-        All samples.
+        All samples in the unit of the channel.
     """
     if rest is None or not 0 <= rest.first <= len(values) < rest.first + len(rest.values):
         return values

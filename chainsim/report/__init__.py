@@ -9,10 +9,10 @@ from importlib import import_module
 from typing import Any
 
 _HOMES = {
-    "animate": "animate",
-    "compare": "compare",
-    "comparison_table": "compare_views",
-    "render_comparison": "compare_views",
+    "animate": "animation",
+    "compare": "comparison",
+    "comparison_table": "comparison_views",
+    "render_comparison": "comparison_views",
     "render_report": "page",
     "write_plots": "plots",
 }

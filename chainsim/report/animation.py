@@ -51,17 +51,17 @@ def animate(rec: Any, path: str | Path, rate: float = 20.0, speed: float = 1.0) 
         If the ending is another one, or an MP4 is asked for and ffmpeg is not installed.
     """
     path = Path(path)
-    write = {".gif": write_gif, ".mp4": write_mp4}.get(path.suffix.lower())
+    write = {".gif": _write_gif, ".mp4": _write_mp4}.get(path.suffix.lower())
     if write is None:
         raise CallError(f"animation '{path.name}': the ending must be .gif or .mp4")
     span = float(rec.time[-1] - rec.time[0]) / speed
     rate = min(rate, max(MAX_FRAMES / max(span, 1e-9), 1.0))
     samples = chosen_samples(rec.time, [], rate / speed)[:-1]
-    write(pictures(rec, samples), path, rate)
+    write(_pictures(rec, samples), path, rate)
     return path
 
 
-def pictures(rec: Any, samples: np.ndarray) -> Iterator[Image.Image]:
+def _pictures(rec: Any, samples: np.ndarray) -> Iterator[Image.Image]:
     """Yield a picture of the lift at each of the samples."""
     parts = drawing_parts(rec)
     left, bottom, right, top = parts.box
@@ -81,14 +81,14 @@ def pictures(rec: Any, samples: np.ndarray) -> Iterator[Image.Image]:
             yield Image.fromarray(np.ascontiguousarray(even))
 
 
-def write_gif(frames: Iterator[Image.Image], path: Path, rate: float) -> None:
+def _write_gif(frames: Iterator[Image.Image], path: Path, rate: float) -> None:
     """Write pictures as GIF that repeats without end."""
     images = [frame.quantize(64) for frame in frames]
     duration = max(round(1000.0 / rate), 20)
     images[0].save(path, save_all=True, append_images=images[1:], duration=duration, loop=0)
 
 
-def write_mp4(frames: Iterator[Image.Image], path: Path, rate: float) -> None:
+def _write_mp4(frames: Iterator[Image.Image], path: Path, rate: float) -> None:
     """Write pictures as MP4 by ffmpeg."""
     program = shutil.which("ffmpeg")
     if program is None:

@@ -162,7 +162,7 @@ def stall_torque(drive: Any) -> float | None:
     return drive.max_torque
 
 
-def travel_after(s: Survey, start: float) -> np.ndarray:
+def _travel_after(s: Survey, start: float) -> np.ndarray:
     """Return the travel of the chain from a moment on, by its driven sprocket, shape (n,) [m]."""
     after = s.time >= start
     return np.cumsum(s.drive_speed[after]) * s.interval
@@ -186,7 +186,7 @@ def overrun(s: Survey) -> Caution | None:
             "Overrun", "After the stop that was simulated the lift had not come to rest."
         )
     end = int(standing[0])
-    run_on = float(np.max(np.abs(travel_after(s, start)[: end + 1])))
+    run_on = float(np.max(np.abs(_travel_after(s, start)[: end + 1])))
     return Caution(
         "Overrun",
         f"After the stop at {start:.2f} s the chain ran on by {quantity(run_on, 'm')} in "
@@ -203,7 +203,7 @@ def run_back(s: Survey) -> Caution | None:
             "No cut of the supply was simulated: whether the loaded lift then runs back is not "
             "known from this run.",
         )
-    travel = travel_after(s, cuts[0])
+    travel = _travel_after(s, cuts[0])
     peak = np.maximum.accumulate(travel)
     back = float(np.max(peak - travel)) if len(travel) else 0.0
     held = "it stood" if back < 0.5 * s.pitch else f"the chain ran back by {quantity(back, 'm')}"

@@ -156,11 +156,11 @@ def finding_row(found: Sequence[Any | None]) -> FindingRow:
         outcomes=tuple(MISSING if f is None else f.outcome for f in found),
         values=tuple(None if f is None else f.value for f in found),
         margins=margins,
-        changes=tuple(margin_change(margins[0], m) if units_agree else None for m in margins[1:]),
+        changes=tuple(_margin_change(margins[0], m) if units_agree else None for m in margins[1:]),
     )
 
 
-def margin_change(first: float | None, other: float | None) -> float | None:
+def _margin_change(first: float | None, other: float | None) -> float | None:
     """Return how much a margin gained, None where one of them does not exist."""
     if first is None or other is None or not math.isfinite(other - first):
         return None

@@ -12,7 +12,7 @@ from rich.table import Table
 from rich.text import Text
 
 from chainsim.report import series
-from chainsim.report.compare import Comparison, cell
+from chainsim.report.comparison import Comparison, cell
 from chainsim.report.images import page_image
 from chainsim.report.marks import outcome_bar
 from chainsim.report.page import render_page
@@ -39,7 +39,7 @@ def comparison_table(comparison: Comparison) -> Group:
     Parameters
     ----------
     comparison : Comparison
-        From `chainsim.report.compare.compare`.
+        From `chainsim.report.compare`.
     """
     inputs = Table(title="Inputs that differ", title_justify="left", title_style="bold")
     inputs.add_column("key")
@@ -71,7 +71,7 @@ def render_comparison(comparison: Comparison, path: str | Path) -> Path:
     Parameters
     ----------
     comparison : Comparison
-        From `chainsim.report.compare.compare`.
+        From `chainsim.report.compare`.
     path : str or Path
         File to write.
 

@@ -34,14 +34,29 @@ from chainsim.report.style import (
 BALL_FILL = "#f4ead6"
 
 
-def turned(points: np.ndarray, angle: float, center: np.ndarray) -> np.ndarray:
+def _turned(points: np.ndarray, angle: float, center: np.ndarray) -> np.ndarray:
     """Return points of a wheel's frame in the world's, shape (n, 2) [m]."""
     c, s = np.cos(angle), np.sin(angle)
     return np.asarray(points) @ np.array([[c, s], [-s, c]]) + center
 
 
 def on_link(pins: np.ndarray, link: int, outline: list) -> np.ndarray:
-    """Return an outline given along a link and along its normal in the world's frame [m]."""
+    """Return an outline given along a link and along its normal in the world's frame.
+
+    Parameters
+    ----------
+    pins : ndarray, shape (n_pins, 2)
+        Pin centers [m].
+    link : int
+        Number of the link [dimensionless].
+    outline : list
+        Points along t and along n from the first pin [m].
+
+    Returns
+    -------
+    ndarray, shape (n, 2)
+        The points [m].
+    """
     start, end = pins[link], pins[(link + 1) % len(pins)]
     along = (end - start) / np.linalg.norm(end - start)
     normal = np.array([along[1], -along[0]])
@@ -88,23 +103,23 @@ def drawing_parts(rec: Any) -> Parts:
     )
 
 
-def draw_standing(axes: Axes, parts: Parts) -> None:
+def _draw_standing(axes: Axes, parts: Parts) -> None:
     """Draw walls, guides, chute and trough."""
     for line in parts.standing:
         points = 1e3 * np.asarray(line["points"])
         axes.plot(points[:, 0], points[:, 1], color=FAINT, linewidth=1.8, zorder=1)
 
 
-def draw_sprockets(axes: Axes, parts: Parts, centers: np.ndarray, angles: np.ndarray) -> None:
+def _draw_sprockets(axes: Axes, parts: Parts, centers: np.ndarray, angles: np.ndarray) -> None:
     """Draw the outline and the axle of every sprocket."""
     for part, center, angle in zip(parts.sprockets, centers, angles, strict=True):
-        outline = 1e3 * turned(np.asarray(part["outline"]), angle, center)
+        outline = 1e3 * _turned(np.asarray(part["outline"]), angle, center)
         patch = Polygon(outline, facecolor="#e4e9ea", edgecolor=STEEL, linewidth=0.7, zorder=2)
         axes.add_patch(patch)
         axes.plot(*(1e3 * center), marker="+", color=INK, markersize=7, zorder=3)
 
 
-def draw_chain(axes: Axes, pins: np.ndarray, tension: np.ndarray, edges: np.ndarray) -> None:
+def _draw_chain(axes: Axes, pins: np.ndarray, tension: np.ndarray, edges: np.ndarray) -> None:
     """Draw every link in the hue and width of its tension, dashed where it pushes."""
     ends = 1e3 * np.stack([pins, np.roll(pins, -1, axis=0)], axis=1)
     classes = tension_class(tension, edges)
@@ -117,13 +132,13 @@ def draw_chain(axes: Axes, pins: np.ndarray, tension: np.ndarray, edges: np.ndar
     )
 
 
-def draw_carriers(axes: Axes, parts: Parts, pins: np.ndarray) -> None:
+def _draw_carriers(axes: Axes, parts: Parts, pins: np.ndarray) -> None:
     """Draw the pockets."""
     outlines = [1e3 * on_link(pins, c["link"], parts.pockets[c["pocket"]]) for c in parts.carriers]
     axes.add_collection(LineCollection(outlines, colors=INK, linewidths=1.0, zorder=5))
 
 
-def draw_balls(axes: Axes, rec: Any, sample: int, radius: float) -> None:
+def _draw_balls(axes: Axes, rec: Any, sample: int, radius: float) -> None:
     """Draw every ball that is in the lift."""
     if not n_slots(rec):
         return
@@ -141,7 +156,15 @@ def at(rec: Any, name: str, sample: int) -> np.ndarray:
 
 
 def tension_key(edges: np.ndarray, has_push: bool) -> list[Line2D]:
-    """Return what the legend needs to show the tension classes."""
+    """Return what the legend needs to show the tension classes.
+
+    Parameters
+    ----------
+    edges : ndarray, shape (n_classes + 1,)
+        Limits of the classes [N].
+    has_push : bool
+        Whether some link pushes.
+    """
     handles = []
     for k, (color, width) in enumerate(zip(TENSION_COLORS, TENSION_WIDTHS, strict=True)):
         label = f"{edges[k]:.3g} to {edges[k + 1]:.3g} N"
@@ -169,13 +192,13 @@ def draw_lift(axes: Axes, rec: Any, sample: int, parts: Parts | None = None) -> 
     """
     parts = parts or drawing_parts(rec)
     pins = at(rec, "pins/position", sample).astype(float)
-    draw_standing(axes, parts)
-    draw_sprockets(
+    _draw_standing(axes, parts)
+    _draw_sprockets(
         axes, parts, at(rec, "sprockets/center", sample), at(rec, "sprockets/angle", sample)
     )
-    draw_chain(axes, pins, at(rec, "links/tension", sample), parts.edges)
-    draw_carriers(axes, parts, pins)
-    draw_balls(axes, rec, sample, parts.ball_radius)
+    _draw_chain(axes, pins, at(rec, "links/tension", sample), parts.edges)
+    _draw_carriers(axes, parts, pins)
+    _draw_balls(axes, rec, sample, parts.ball_radius)
     left, bottom, right, top = (1e3 * side for side in parts.box)
     is_mirrored = rec.scenario.view == "back"
     axes.set_aspect("equal")

@@ -47,7 +47,17 @@ def finding_view(finding: Any, reserve: float, marks: list[Mark]) -> dict:
 
 
 def grouped(findings: list, reserve: float, marks: list[Mark]) -> list[dict]:
-    """Return the findings in their groups, in the order in which they stand on paper."""
+    """Return the findings in their groups, in the order in which they stand on paper.
+
+    Parameters
+    ----------
+    findings : list of Finding
+        The findings.
+    reserve : float
+        Share of the scale below which an outcome is close [dimensionless].
+    marks : list of Mark
+        Marks of the playback.
+    """
     return [
         {
             "name": title,

@@ -9,7 +9,13 @@ from chainsim.report.style import INK, OUTCOME_COLORS, TENSION_COLORS, TENSION_W
 
 
 def tension_key(top: float) -> Markup:
-    """Return the key of the tension classes as text with small drawings."""
+    """Return the key of the tension classes as text with small drawings.
+
+    Parameters
+    ----------
+    top : float
+        Upper end of the highest class [N].
+    """
     n = len(TENSION_COLORS)
     parts = []
     for k, (color, width) in enumerate(zip(TENSION_COLORS, TENSION_WIDTHS, strict=True)):

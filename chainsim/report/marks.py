@@ -37,7 +37,7 @@ def outcome_bar(outcome: str) -> Markup:
     )
 
 
-def gauge_place(share: float) -> float:
+def _gauge_place(share: float) -> float:
     """Return where a share of the scale lies along a gauge [px]."""
     clipped = min(max(share, GAUGE_LOW), GAUGE_HIGH)
     return GAUGE_WIDTH * (clipped - GAUGE_LOW) / (GAUGE_HIGH - GAUGE_LOW)
@@ -62,10 +62,10 @@ def margin_gauge(margin: float | None, scale: float | None, reserve: float) -> M
         return Markup('<span class="none">no margin</span>')
     share = margin / scale
     width = round(GAUGE_WIDTH + 12.0)
-    zero, edge, at = gauge_place(0.0), gauge_place(reserve), gauge_place(share)
+    zero, edge, at = _gauge_place(0.0), _gauge_place(reserve), _gauge_place(share)
     ticks = "".join(
         f'<line x1="{x:.1f}" x2="{x:.1f}" y1="16" y2="19" stroke="{FAINT}"/>'
-        for x in map(gauge_place, (-0.5, 0.5, 1.0))
+        for x in map(_gauge_place, (-0.5, 0.5, 1.0))
     )
     hatch = "".join(
         f'<line x1="{x:.1f}" y1="16" x2="{min(x + 4.0, edge):.1f}" y2="10" stroke="{FAINT}"/>'

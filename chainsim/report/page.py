@@ -23,7 +23,7 @@ from chainsim.report.moments import marks
 from chainsim.report.plots import PLOTS
 from chainsim.report.provenance import provenance_rows
 from chainsim.report.scene import build_scene
-from chainsim.report.sizing import sizing_rows
+from chainsim.report.sizing import delivered_text, sizing_rows
 from chainsim.report.style import OUTCOME_COLORS, plot_style
 from chainsim.report.text import BLIND_SPOTS, DEFERS, findings_of, overall_outcome, readable
 from chainsim.report.values import origin_counts, value_blocks
@@ -107,6 +107,7 @@ def report_html(rec: Any) -> str:
         jump_lists=jump_lists(found),
         plot_parts=plot_parts(rec),
         sizing=sizing_rows(rec),
+        delivered=delivered_text(rec),
         origin_text=origin_counts(rec.scenario),
         values=value_blocks(rec.scenario),
         scenario_text=rec.scenario_texts.get("text") or rec.scenario.text,

@@ -19,13 +19,13 @@ def standing_parts(rec: Any) -> list[dict]:
             "geometry/chute",
             "geometry/trough",
         ):
-            points = finite_points(rec[name])
+            points = _finite_points(rec[name])
             if len(points) > 1:
                 parts.append({"name": name.split("/", 1)[1], "points": points.round(5).tolist()})
     return parts
 
 
-def finite_points(points: np.ndarray) -> np.ndarray:
+def _finite_points(points: np.ndarray) -> np.ndarray:
     """Return the points without the padding, shape (n, 2) [m]."""
     points = np.asarray(points, dtype=float).reshape(-1, 2)
     return points[np.isfinite(points).all(axis=1)]
@@ -38,7 +38,7 @@ def sprocket_parts(rec: Any) -> list[dict]:
     centers = rec["sprockets/center"][0]
     parts = []
     for index, sprocket in enumerate(rec.scenario.sprocket):
-        outline = finite_points(outlines[index])
+        outline = _finite_points(outlines[index])
         stride = max(1, math.ceil(len(outline) / OUTLINE_POINTS))
         kind = sprocket.mount.kind
         moves = kind not in ("fixed", "screwed")
@@ -65,7 +65,7 @@ def carrier_parts(rec: Any) -> tuple[list[dict], list[list]]:
     shapes: list[list] = []
     carriers = []
     for link, outline in zip(links, rec["geometry/pocket_outline"], strict=True):
-        shape = finite_points(outline).round(6).tolist()
+        shape = _finite_points(outline).round(6).tolist()
         if shape not in shapes:
             shapes.append(shape)
         carriers.append({"link": int(link), "pocket": shapes.index(shape)})

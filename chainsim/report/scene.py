@@ -28,7 +28,7 @@ from chainsim.report.playback import (
 from chainsim.report.style import TENSION_COLORS, TENSION_WIDTHS, tension_edges
 
 
-def readouts(rec: Any, samples: np.ndarray) -> tuple[list[dict], np.ndarray]:
+def _readouts(rec: Any, samples: np.ndarray) -> tuple[list[dict], np.ndarray]:
     """Return what stands beside the motion: captions, and values of shape (frames, k)."""
     speed = np.linalg.norm(rec["pins/velocity"][samples], axis=-1).mean(axis=-1)
     columns = [speed, np.nanmax(rec["links/tension"][samples], axis=-1)]
@@ -45,7 +45,7 @@ def readouts(rec: Any, samples: np.ndarray) -> tuple[list[dict], np.ndarray]:
     return captions, np.nan_to_num(np.stack(columns, axis=1).astype(float))
 
 
-def motion_channels(rec: Any, samples: np.ndarray, box: tuple[float, ...]) -> list[Channel]:
+def _motion_channels(rec: Any, samples: np.ndarray, box: tuple[float, ...]) -> list[Channel]:
     """Pack everything that moves at the chosen samples."""
     frames = len(samples)
     margin = 0.5 * max(box[2] - box[0], box[3] - box[1])
@@ -59,7 +59,7 @@ def motion_channels(rec: Any, samples: np.ndarray, box: tuple[float, ...]) -> li
         packed_range("centers", rec["sprockets/center"][samples].reshape(frames, -1), low, high),
         packed_angle("angles", rec["sprockets/angle"][samples]),
     ]
-    _, values = readouts(rec, samples)
+    _, values = _readouts(rec, samples)
     channels.append(packed_range("readouts", values, values.min(axis=0), values.max(axis=0)))
     if "mounts/weight" in rec:
         drop = np.nan_to_num(rec["mounts/weight"][samples])
@@ -100,7 +100,7 @@ def build_scene(rec: Any, findings: list) -> tuple[dict, str]:
     while True:
         keep = [mark.time for mark in found]
         samples = chosen_samples(rec.time, keep, rate)
-        channels = motion_channels(rec, samples, box)
+        channels = _motion_channels(rec, samples, box)
         frames = squeezed(channels)
         if len(frames) <= MAX_BASE64 or rate < 1.0:
             break
@@ -125,7 +125,7 @@ def build_scene(rec: Any, findings: list) -> tuple[dict, str]:
             "colors": TENSION_COLORS,
             "widths": TENSION_WIDTHS,
         },
-        "readouts": readouts(rec, samples)[0],
+        "readouts": _readouts(rec, samples)[0],
         "marks": [{"time": m.time, "label": m.label, "target": m.target} for m in found],
         "view": [round(float(x), 6) for x in box],
         "mirror": getattr(rec.scenario, "view", "front") == "back",

@@ -76,7 +76,7 @@ class Panel:
     limits: tuple[Limit, ...] = ()
 
 
-def over_slots(values: np.ndarray, largest: bool) -> np.ndarray:
+def _over_slots(values: np.ndarray, largest: bool) -> np.ndarray:
     """Return the largest or smallest of the slots that are in use, shape (n_samples,)."""
     with warnings.catch_warnings():
         warnings.simplefilter("ignore", RuntimeWarning)  # no slot in use: NaN is the answer
@@ -129,7 +129,7 @@ def ride_panels(rec: Any) -> list[Panel]:
     panels = [Panel("chain speed", "speed", "m/s", tuple(curves))]
     acceleration = ball_acceleration(rec)
     if acceleration is not None and np.isfinite(acceleration).any():
-        largest = [over_slots(np.abs(acceleration[:, :, k]), largest=True) for k in (0, 1)]
+        largest = [_over_slots(np.abs(acceleration[:, :, k]), largest=True) for k in (0, 1)]
         panels.append(
             Panel(
                 "largest acceleration at any carried ball, mean over a sample",
@@ -146,7 +146,7 @@ def seat_panels(rec: Any) -> list[Panel]:
     reserve = usable(rec, "balls/seat_reserve")
     if reserve is None:
         return []
-    curve = Curve("", over_slots(reserve, largest=False))
+    curve = Curve("", _over_slots(reserve, largest=False))
     limits = (Limit(0.0, "the seat gives way"),)
     return [
         Panel("smallest seat reserve of all carried balls", "reserve", "m/s²", (curve,), limits)

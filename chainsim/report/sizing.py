@@ -1,23 +1,49 @@
 """The sizing sheet of a lift beside what its run gave: closed forms left, simulation right.
 
-The closed forms come from `chainsim.closed_forms`, which name their sources; nothing is simulated
-there. Tension rows are given where the layout is the one that their free body is drawn for: a
-vertical loop over two sprockets whose lower one hangs in it.
+The closed forms are those of `chainsim.analysis.sizing`; a simulated value stands beside a row
+where the run has one of the same meaning: means of steady running, eigenvalues at rest.
 """
 
 from __future__ import annotations
 
 import math
-from typing import Any
+from collections.abc import Callable
+from typing import Any, NamedTuple
+
+import numpy as np
 
 from chainsim.analysis.chain_motion import ripple
 from chainsim.analysis.ride import carried_balls
+from chainsim.analysis.sizing import Row, sizing_sheet
 from chainsim.analysis.survey import Survey, survey
-from chainsim.closed_forms.chordal import speed_variation, tooth_rate
-from chainsim.closed_forms.sprockets import pitch_radius
-from chainsim.report.sizing_basis import SizingRow, balls_on_strand
-from chainsim.report.sizing_loads import frequency_rows, tension_rows, torque_rows
-from chainsim.report.text import percent, quantity, significant
+from chainsim.analysis.tensions import strand_ends
+from chainsim.errors import ChainsimError
+from chainsim.model.tangents import route
+from chainsim.model.wheels import chain_pitch, down_of, wheels_of
+from chainsim.report.text import findings_of, quantity
+from chainsim.units import format_si
+
+
+class SizingRow(NamedTuple):
+    """One quantity, worked out two ways.
+
+    Attributes
+    ----------
+    name : str
+        What it is.
+    closed_form, simulated : str
+        Both values with their unit; ``"–"`` where one does not exist.
+    source : str
+        Formula of the closed form.
+    remark : str
+        What the closed form means or leaves out.
+    """
+
+    name: str
+    closed_form: str
+    simulated: str
+    source: str
+    remark: str
 
 
 def sizing_rows(rec: Any) -> list[SizingRow]:
@@ -27,85 +53,139 @@ def sizing_rows(rec: Any) -> list[SizingRow]:
     ----------
     rec : Recording
         The run.
+
+    Returns
+    -------
+    list of SizingRow
+        Empty where the layout has no closed form.
     """
     s = survey(rec)
-    return [
-        *sprocket_rows(s),
-        *speed_rows(s),
-        *ball_rows(s),
-        *tension_rows(s),
-        *torque_rows(s),
-        *frequency_rows(s),
-    ]
-
-
-def sprocket_rows(s: Survey) -> list[SizingRow]:
-    """Seat radii, and the number of links."""
-    rows = [SizingRow("links in the loop", "–", str(s.n_pins), "")]
-    for k, name in enumerate(s.sprocket_names):
-        if s.teeth[k]:
-            rows.append(
-                SizingRow(
-                    f"radius through the seated pins, {name}",
-                    quantity(pitch_radius(s.scenario.chain.pitch, s.teeth[k]), "m", 4),
-                    quantity(float(s.seat_radius[k]), "m", 4),
-                    f"{s.teeth[k]} teeth",
-                )
-            )
-    return rows
-
-
-def speed_rows(s: Survey) -> list[SizingRow]:
-    """Chain speed, tooth rate and ripple."""
-    wanted = s.scenario.drive.chain_speed
-    teeth = s.teeth[s.sprocket_names.index(s.scenario.drive.sprocket)]
-    found = ripple(s)
-    rows = [
-        SizingRow(
-            "chain speed, mean over a tooth",
-            quantity(wanted, "m s-1"),
-            quantity(s.steady_speed, "m s-1"),
-            "demanded, and held in steady running",
-        )
-    ]
-    if wanted:
-        rate = tooth_rate(wanted, s.scenario.chain.pitch)
-        rows.append(SizingRow("tooth rate", quantity(rate, "Hz"), quantity(s.tooth_rate, "Hz"), ""))
-    if teeth:
-        rows.append(
-            SizingRow(
-                "chain speed ripple, peak to peak over mean",
-                percent(speed_variation(teeth)),
-                percent(found.peak_to_peak) if found else "–",
-                "polygon of the driven sprocket alone; the other sprockets and the chain's "
-                "own swing come on top",
-            )
-        )
-    return rows
-
-
-def ball_rows(s: Survey) -> list[SizingRow]:
-    """Rates of pockets and balls, and balls aboard."""
-    scenario = s.scenario
-    if scenario.balls is None or scenario.carriers is None or not scenario.drive.chain_speed:
+    try:
+        path = route(wheels_of(s.scenario), chain_pitch(s.scenario), down_of(s.scenario))
+        sheet = sizing_sheet(s.scenario, path, s.n_pins)
+    except ChainsimError:
         return []
-    pockets = scenario.drive.chain_speed / (s.pitch * scenario.carriers.every)
-    delivered = next((f.value for f in s.rec.findings if f.name == "rate_met"), None)
-    carried = carried_balls(s).sum(axis=1)
-    aboard = float(carried[s.is_steady].mean()) if s.steady and carried.size else float("nan")
-    demand = scenario.balls.feed.rate
-    feed = f"; the feed brings {quantity(demand, 's-1')}" if demand else ""
+    beside = simulated_values(s)
     return [
-        SizingRow(
-            "rate of pockets, balls delivered",
-            quantity(pockets, "s-1"),
-            quantity(delivered, "s-1"),
-            f"every pocket filled{feed}",
-        ),
-        SizingRow(
-            "balls on the carrying strand",
-            significant(balls_on_strand(s)),
-            significant(aboard) if math.isfinite(aboard) else "–",
-            "between the axles; mean in steady running",
-        ),
+        SizingRow(row.name, row.text, simulated_text(row, beside), row.source, row.note)
+        for row in sheet
     ]
+
+
+def simulated_text(row: Row, beside: dict[str, float]) -> str:
+    """Return the simulated value of a row with its unit, a dash where there is none.
+
+    Parameters
+    ----------
+    row : Row
+        Row of the sizing sheet.
+    beside : dict of str to float
+        Simulated values by the name of their row [SI].
+    """
+    value = beside.get(row.name, math.nan)
+    if not math.isfinite(value):
+        return "–"
+    return format_si(value, row.kind) if row.kind else f"{value:.3g}"
+
+
+def simulated_values(s: Survey) -> dict[str, float]:
+    """Return what the run gave, by the name of the row of the sizing sheet that it belongs to.
+
+    Parameters
+    ----------
+    s : Survey
+        The recording.
+
+    Returns
+    -------
+    dict of str to float
+        Values [SI]; NaN where nothing ran steadily.
+    """
+    driven = s.sprocket_names.index(s.scenario.drive.sprocket)
+    found = ripple(s)
+    values = {
+        "tooth rate": s.tooth_rate,
+        f"speed variation from {s.sprocket_names[driven]}": (
+            found.peak_to_peak if found else math.nan
+        ),
+        "speed of the driven sprocket": mean_of(s, "sprockets/rate", lambda v: v[:, driven]),
+        "mean torque on the driven sprocket": abs(mean_of(s, "drive/torque")),
+        "current": mean_of(s, "drive/current"),
+        "balls on the carrying strand": balls_aboard(s),
+    }
+    peak = s.rec.extremes.get("link_tension")
+    if peak is not None:
+        share = peak.value / s.scenario.chain.allowable_tension
+        values["greatest tension over the allowable"] = share
+    return values | strand_values(s) | mode_values(s)
+
+
+def strand_values(s: Survey) -> dict[str, float]:
+    """Return the mean tensions at both ends of every strand [N]."""
+    values = {}
+    for k, strand in enumerate(s.strands):
+        ends = strand_ends(s, k)
+        leaves, meets = s.sprocket_names[strand.start], s.sprocket_names[strand.end]
+        values[f"tension of {strand.name} leaving {leaves}"] = steady_mean(s, ends.start)
+        values[f"tension of {strand.name} meeting {meets}"] = steady_mean(s, ends.end)
+    return values
+
+
+def mode_values(s: Survey) -> dict[str, float]:
+    """Return the first frequencies of the strands and of a take-up at rest [Hz]."""
+    values: dict[str, float] = {}
+    for mode in s.rec.modes:
+        if mode.kind.startswith("take-up "):
+            values.setdefault("take-up bouncing on the chain", float(mode.frequency))
+        elif mode.kind.startswith("strand ") and mode.kind.endswith(" 1"):
+            name = mode.kind.removeprefix("strand ").removesuffix(" 1")
+            values.setdefault(f"first frequency of {name}", float(mode.frequency))
+    return values
+
+
+def balls_aboard(s: Survey) -> float:
+    """Return the mean number of balls carried in steady running [dimensionless]."""
+    carried = carried_balls(s)
+    held = s.channel("carriers/loaded")
+    if not carried.any() and held is not None:
+        return steady_mean(s, held.sum(axis=1))
+    return steady_mean(s, carried.sum(axis=1))
+
+
+def mean_of(s: Survey, name: str, part: Callable = lambda values: values) -> float:
+    """Return the mean of a channel, or a part of it, in steady running; NaN where it is missing.
+
+    Parameters
+    ----------
+    s : Survey
+        The recording.
+    name : str
+        Path of the channel.
+    part : callable
+        Takes its values, returns those of shape (n_samples,).
+    """
+    values = s.channel(name)
+    return math.nan if values is None else steady_mean(s, part(values))
+
+
+def steady_mean(s: Survey, values: np.ndarray) -> float:
+    """Return the mean over steady running, NaN where there is none.
+
+    Parameters
+    ----------
+    s : Survey
+        The recording.
+    values : ndarray, shape (n_samples,)
+        In any unit.
+    """
+    chosen = np.asarray(values, dtype=float)[s.is_steady]
+    chosen = chosen[np.isfinite(chosen)]
+    return float(chosen.mean()) if chosen.size else math.nan
+
+
+def delivered_text(rec: Any) -> str:
+    """Return the rate at which balls were delivered, as a sentence."""
+    found = next((f for f in findings_of(rec) if f.name == "rate_met"), None)
+    if found is None or found.value is None:
+        return ""
+    return f"The run delivered {quantity(found.value, found.unit)}."

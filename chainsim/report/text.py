@@ -73,7 +73,7 @@ def quantity(value: float | None, unit: str, digits: int = 3) -> str:
     """
     if value is None or not is_number(float(value)):
         return "–"
-    factor, text = readable_unit(abs(float(value)), unit)
+    factor, text = _readable_unit(abs(float(value)), unit)
     return f"{significant(float(value) * factor, digits)} {text}".strip()
 
 
@@ -82,7 +82,7 @@ def unit_of(name: str, unit: str) -> str:
     return DIMENSIONLESS_FINDINGS.get(name, unit) if unit in ("", "1") else unit
 
 
-def readable_unit(size: float, unit: str) -> tuple[float, str]:
+def _readable_unit(size: float, unit: str) -> tuple[float, str]:
     """Return the factor and the text of the unit in which a size [`unit`] reads best."""
     if unit == SHARE:
         return 100.0, "%"
@@ -94,7 +94,15 @@ def readable_unit(size: float, unit: str) -> tuple[float, str]:
 
 
 def significant(value: float, digits: int = 3) -> str:
-    """Return a number with so many significant digits, an exponent only where it must have one."""
+    """Return a number as text, with an exponent only where it must have one.
+
+    Parameters
+    ----------
+    value : float
+        The number [any unit].
+    digits : int
+        Significant digits [dimensionless].
+    """
     if value == 0.0:
         return "0"
     if not 1e-4 <= abs(value) < 1e6:
@@ -107,14 +115,28 @@ def significant(value: float, digits: int = 3) -> str:
 
 
 def percent(share: float) -> str:
-    """Return a share in percent; what rounds to nothing is said to be small."""
+    """Return a share in percent; what rounds to nothing is said to be small.
+
+    Parameters
+    ----------
+    share : float
+        The share [dimensionless].
+    """
     if 0.0 < abs(share) < 1e-5:
         return "less than 0.001 %"
     return f"{significant(100.0 * share)} %"
 
 
 def signed(value: float | None, unit: str) -> str:
-    """Return a margin with its sign and unit."""
+    """Return a margin with its sign and unit.
+
+    Parameters
+    ----------
+    value : float or None
+        In `unit`.
+    unit : str
+        As the recording writes it.
+    """
     text = quantity(value, unit)
     return text if value is None or text == "–" or value < 0.0 else f"+{text}"
 
@@ -136,7 +158,15 @@ def readable(text: str) -> str:
 
 
 def moment_text(time: float | None, place: str) -> str:
-    """Return when and where something happened, in words."""
+    """Return when and where something happened, in words.
+
+    Parameters
+    ----------
+    time : float or None
+        When [s].
+    place : str
+        Where.
+    """
     parts = []
     if time is not None and math.isfinite(time):
         parts.append(f"at {time:.3f} s")

@@ -36,7 +36,8 @@ def thinned(time: np.ndarray, values: np.ndarray) -> tuple[np.ndarray, ...]:
     Returns
     -------
     tuple of 4 ndarrays, each of shape (n,)
-        With n at most `MAX_COLUMNS`, or every sample where there are no more than that.
+        Times [s] and values [their unit]; n is at most `MAX_COLUMNS`, or every sample where
+        there are no more than that.
     """
     size = max(1, int(np.ceil(len(time) / MAX_COLUMNS)))
     full = len(time) - len(time) % size
@@ -65,7 +66,7 @@ def smoothed(mean: np.ndarray) -> np.ndarray:
     return np.where(known, total / np.maximum(count, 1.0), np.nan)
 
 
-def draw_curve(axes: Axes, time: np.ndarray, curve: Curve, look: dict, label: str) -> None:
+def _draw_curve(axes: Axes, time: np.ndarray, curve: Curve, look: dict, label: str) -> None:
     """Draw a curve with the band between least and largest values behind it."""
     middle, mean, low, high = thinned(time, curve.values)
     if len(middle) < len(time):
@@ -74,7 +75,7 @@ def draw_curve(axes: Axes, time: np.ndarray, curve: Curve, look: dict, label: st
     axes.plot(middle, mean, label=label, **look)
 
 
-def draw_limits(axes: Axes, panel: Panel) -> None:
+def _draw_limits(axes: Axes, panel: Panel) -> None:
     """Draw the levels that a quantity is judged against, each with its name."""
     for limit in panel.limits:
         color = OUTCOME_COLORS["fails"]
@@ -92,7 +93,7 @@ def draw_limits(axes: Axes, panel: Panel) -> None:
         )
 
 
-def draw_events(axes: Axes, rec: Any, named: bool) -> None:
+def _draw_events(axes: Axes, rec: Any, named: bool) -> None:
     """Draw a thin line at each dated event of the scenario and where steady running starts."""
     top = axes.get_xaxis_transform()
     moments = [(event.at, event.kind.replace("_", " ")) for event in rec.scenario.event]
@@ -139,9 +140,9 @@ def panels_figure(rec: Any, panels: list[Panel]) -> Figure:
     for axes, panel in zip(all_axes, panels, strict=True):
         for k, curve in enumerate(panel.curves):
             look = LINE_CYCLE[k % len(LINE_CYCLE)]
-            draw_curve(axes, rec.time, curve, look, curve.label)
-        draw_limits(axes, panel)
-        draw_events(axes, rec, named=axes is all_axes[0])
+            _draw_curve(axes, rec.time, curve, look, curve.label)
+        _draw_limits(axes, panel)
+        _draw_events(axes, rec, named=axes is all_axes[0])
         finish(axes, panel)
         axes.set_xlim(rec.time[0], rec.time[-1])
     all_axes[-1].set_xlabel("time [s]")
@@ -166,8 +167,8 @@ def overlay_figure(runs: list[tuple[str, Any]], panels: list[list[Panel]]) -> Fi
         for k, ((name, rec), own) in enumerate(zip(runs, single, strict=True)):
             if title in own:
                 curve = own[title].curves[0]
-                draw_curve(axes, rec.time, curve, LINE_CYCLE[k % len(LINE_CYCLE)], name)
-        draw_limits(axes, shown)
+                _draw_curve(axes, rec.time, curve, LINE_CYCLE[k % len(LINE_CYCLE)], name)
+        _draw_limits(axes, shown)
         finish(axes, shown)
         axes.set_xlim(min(rec.time[0] for _, rec in runs), max(rec.time[-1] for _, rec in runs))
     all_axes[-1].set_xlabel("time [s]")

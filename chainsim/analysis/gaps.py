@@ -110,7 +110,8 @@ def outline_points(rec: Any, samples: np.ndarray) -> np.ndarray | None:
         return None
     start = s.position[samples[:, None], link]
     along = s.position[samples[:, None], (link + 1) % s.n_pins] - start
-    along = along / np.hypot(along[..., 0], along[..., 1])[..., None]
+    length = np.hypot(along[..., 0], along[..., 1])
+    along = along / np.where(length > 0.0, length, np.nan)[..., None]
     normal = np.stack((along[..., 1], -along[..., 0]), axis=-1)
     return (
         start[:, :, None]

@@ -15,7 +15,7 @@ NONE = -1
 """Stands for "no pin" [dimensionless]."""
 
 
-@njit(cache=True)
+@njit(cache=True, error_model="numpy")
 def find_wraps(position, center, reach, entry, leave):
     """Find the first and the last pin that lie on each sprocket.
 
@@ -55,7 +55,7 @@ def find_wraps(position, center, reach, entry, leave):
                 entry[i, k], leave[i, k] = first, last
 
 
-@njit(cache=True)
+@njit(cache=True, error_model="numpy")
 def strand_speeds(position, velocity, first, n_links, speed):
     """Mean over the links of a strand of their speed along themselves.
 
@@ -81,7 +81,7 @@ def strand_speeds(position, velocity, first, n_links, speed):
         speed[i] = total / n_links[i] if n_links[i] > 0 else math.nan
 
 
-@njit(cache=True)
+@njit(cache=True, error_model="numpy")
 def strand_excursions(position, first, n_links, normal, offset, size, pin):
     """Largest distances of a strand's pins from a line, to both of its sides.
 
@@ -120,7 +120,7 @@ def strand_excursions(position, first, n_links, normal, offset, size, pin):
         size[i, 0], size[i, 1] = max(most, 0.0), max(-least, 0.0)
 
 
-@njit(cache=True)
+@njit(cache=True, error_model="numpy")
 def station_means(tension, first, n_links, window, total, mean):
     """Tension at each station of a strand, averaged over the time that ends with each sample.
 
@@ -161,7 +161,7 @@ def station_means(tension, first, n_links, window, total, mean):
             mean[i, k] = (total[k] + part * old) / window if known >= needed else math.nan
 
 
-@njit(cache=True)
+@njit(cache=True, error_model="numpy")
 def least_level(values, counted, allowed, limit, below):
     """Highest level that no column undercuts for longer than a time, and the longest undercut.
 

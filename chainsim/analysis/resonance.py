@@ -193,13 +193,11 @@ def _mass_per_length(s: Survey, strand: int) -> float:
     per_link = len(carrier_link) / (s.n_pins * s.pitch)
     mass += scenario.carriers.mass * per_link
     loaded = s.channel("carriers/loaded")
-    if scenario.balls is not None and loaded is not None and s.strands[strand].carrying:
-        pins = s.strand_pins[strand]
-        ahead = (carrier_link[None, :] - pins.first[:, None]) % s.n_pins
-        aboard = np.where(ahead < pins.n_links[:, None], loaded, 0).sum(axis=1)
-        mass += (
-            scenario.balls.mass
-            * float(aboard[s.is_steady].mean())
-            / (float(np.median(pins.n_links)) * s.pitch)
-        )
+    pins = s.strand_pins[strand]
+    samples = np.flatnonzero(s.is_steady & pins.is_known)
+    if scenario.balls is not None and loaded is not None and samples.size:
+        n_links = pins.n_links[samples]
+        ahead = (carrier_link[None, :] - pins.first[samples, None]) % s.n_pins
+        aboard = np.where(ahead < n_links[:, None], loaded[samples], 0).sum(axis=1)
+        mass += scenario.balls.mass * float(aboard.mean()) / (float(n_links.mean()) * s.pitch)
     return float(mass)

@@ -6,6 +6,7 @@ from types import SimpleNamespace
 import numpy as np
 import pytest
 
+from chainsim.analysis import run_summary
 from chainsim.findings import GROUPS, Finding, Measure, judge, situations, verdict
 from chainsim.findings.finding import judged, unjudged
 from tests.synthetic import synthetic_recording
@@ -154,3 +155,41 @@ def test_verdict_of_a_run_that_holds_is_not_a_licence():
 def test_verdict_of_close_findings_and_of_none():
     assert "1 of 2 is close" in verdict([finding("close"), finding("holds")], RAN)
     assert verdict([finding("not judged")], ([], ["stop"])).startswith("Nothing could be judged")
+
+
+def broken(rec, how):
+    """Recording of a run that went badly wrong half way."""
+    random, half = np.random.default_rng(5), len(rec.time) // 2
+    position, tension = rec["pins/position"].copy(), rec["links/tension"].copy()
+    angle = rec["sprockets/angle"].copy()
+    if how == "off its sprockets":
+        position[half:] += random.normal(scale=0.2, size=position[half:].shape)
+    elif how == "in one point":
+        position[half:] = 0.0
+    elif how == "not a number":
+        position[half:], tension[half:], angle[half:] = np.nan, np.nan, np.nan
+    return Overlay(
+        rec,
+        {"pins/position": position, "links/tension": tension, "sprockets/angle": angle},
+        events=[event(6.0, "supply_cut"), event(7.0, "jam")],
+    )
+
+
+@pytest.mark.filterwarnings("error")
+@pytest.mark.parametrize("how", ["off its sprockets", "in one point", "not a number"])
+def test_whatever_was_recorded_is_judged_or_says_why(rec, how):
+    wreck = broken(rec, how)
+    for found in judge(wreck):
+        assert (found.outcome == "not judged") == bool(found.why)
+    assert run_summary(wreck, [])["n_links"] == 60
+
+
+@pytest.mark.filterwarnings("error")
+@pytest.mark.parametrize("n", [0, 1, 2, 3, 20])
+def test_short_recordings_are_judged_as_far_as_they_go(n):
+    rec = synthetic_recording(duration=3.0)
+    cut = {name: rec[name][:n] for name in rec.names() if not name.startswith("geometry/")}
+    short = Overlay(rec, cut, time=rec.time[:n], balls=[], extremes={})
+    assert len(judge(short)) == 13
+    assert verdict(judge(short), situations(short))
+    assert "duration" in run_summary(short, [])

@@ -29,8 +29,9 @@ def test_excursion_inward_and_outward_have_limits_of_their_own(rec):
 
 
 def test_parts_that_touch_fail_even_without_a_limit(rec):
-    """The made-up chute of the recording reaches into the way of the pockets."""
-    finding = found(rec, "parts_keep_clear")
+    """A chute that reaches into the way of the pockets."""
+    chute = np.array([[0.03, 0.26], [0.12, 0.24]])
+    finding = found(Overlay(rec, {"geometry/chute": chute}), "parts_keep_clear")
     assert (finding.outcome, finding.limit) == ("fails", 0.0)
     assert finding.place == "carriers and chute"
     touch = Overlay(rec, extremes={"gap": extreme(-0.0002, 3.0, "carrier 2 and guard")})

@@ -99,7 +99,10 @@ def _worst(found: list[Taut]) -> Taut | None:
 
 
 def between_feed_and_discharge(s: Survey, strand: int) -> np.ndarray:
-    """Which stations of a strand lie between the heights of feed and discharge.
+    """Which stations of a strand lie between ``load_at`` and ``unload_at``.
+
+    Left out, these are the heights of the lowest and the highest axle on the drawing; then the
+    whole strand counts, wherever a take-up hangs.
 
     Parameters
     ----------
@@ -126,19 +129,16 @@ def between_feed_and_discharge(s: Survey, strand: int) -> np.ndarray:
 
 
 def _carrying_heights(s: Survey) -> tuple[float, float]:
-    """Heights between which balls are carried [m]; infinite where the scenario names none."""
+    """Heights between which balls are carried [m]; infinite where they lie beyond all axles."""
     balls = s.scenario.balls
-    low, high = -np.inf, np.inf
     if balls is None:
-        return low, high
-    feed = balls.feed
-    if getattr(feed, "load_at", None) is not None:
-        low = float(feed.load_at)
-    if getattr(feed, "unload_at", None) is not None:
-        high = float(feed.unload_at)
-    if balls.discharge is not None and getattr(balls.discharge, "at", None) is not None:
-        high = min(high, float(balls.discharge.at[1]))
-    return low, high
+        return -np.inf, np.inf
+    axles = [sprocket.center[1] for sprocket in s.scenario.sprocket]
+    low, high = balls.load_at, balls.unload_at
+    return (
+        -np.inf if low is None or low <= min(axles) else float(low),
+        np.inf if high is None or high >= max(axles) else float(high),
+    )
 
 
 def resting_tension(rec: Any, strand: int) -> float:

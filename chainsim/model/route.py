@@ -32,6 +32,9 @@ SEATED = 0.15
 """A pin of a bow counts as seated when nearer to a seat than this share of the pitch
 (dimensionless)."""
 
+FOOT_LINKS = 10
+"""Links over which a strand bows out at its foot (dimensionless), few, for surplus sinks."""
+
 HANGING = math.cos(math.radians(45.0))
 """The wrap of the lowest wheel takes the surplus when its middle points down within 45°
 (dimensionless cosine); else the lowest strand does."""
@@ -138,18 +141,39 @@ def _lay_taut(path: Route, n_links: int, walk: Walk) -> Walk:
 
 
 def _lay_slack(path: Route, n_links: int, down: tuple[float, float]) -> Walk:
-    """Let the surplus bow out under the lowest wheel, or in the lowest strand."""
+    """Let the surplus hang under the lowest wheel, or sag in the lowest strand.
+
+    Under a wheel, pins stay seated where the chain meets and leaves it, so that no tooth stands
+    in a pin: whole links hang below, the rest of one bows out at the foot of the arriving strand.
+    """
     k = _lowest_wheel(path, down)
-    if k is not None:
-        walk = walk_round(path, n_links, k, path.pitch, in_wrap=True)
+    if k is None:
+        middle = 0.5 * (path.start + path.end) @ np.array(down)
+        k = (int(np.argmax(middle)) + 1) % len(path.wheels)
+        walk = walk_round(path, n_links, k, path.pitch)
         bow = bow_out(walk.last, walk.first, walk.links_left, path.pitch, down)
-        seats = [k if _is_seated(path, k, walk.seat_angle[k], pin) else -1 for pin in bow]
-        last = k if _is_seated(path, k, walk.seat_angle[k], walk.last) else -1
-        return walk._replace(pin=walk.pin + list(bow), seat=walk.seat[:-1] + [last] + seats)
-    middle = 0.5 * (path.start + path.end) @ np.array(down)
-    k = (int(np.argmax(middle)) + 1) % len(path.wheels)
+        return _close(walk, path, k, bow)
     walk = walk_round(path, n_links, k, path.pitch)
-    return _close(walk, path, k, bow_out(walk.last, walk.first, walk.links_left, path.pitch, down))
+    links = math.ceil(walk.gap / path.pitch - 1e-9)
+    strand = _strand_with_foot(walk, links, path.pitch)
+    _, held = entry_place(path, k, walk.seat_angle[k])
+    hanging = held + walk.links_left - links
+    loop = bow_out(walk.first, walk.pin[0], hanging, path.pitch, down)
+    seats = [k if _is_seated(path, k, walk.seat_angle[k], pin) else -1 for pin in loop]
+    return walk._replace(
+        pin=[*walk.pin, *strand, walk.first, *loop],
+        seat=walk.seat + [-1] * len(strand) + [k] + seats,
+    )
+
+
+def _strand_with_foot(walk: Walk, links: int, pitch: float) -> np.ndarray:
+    """Place the inner pins of a strand that is less than a link too long: it bows at its end."""
+    foot = min(links, FOOT_LINKS)
+    along = (walk.first - walk.last) / walk.gap
+    straight = walk.last + pitch * np.arange(1, links - foot + 1)[:, None] * along
+    start = straight[-1] if len(straight) else walk.last
+    outward = (float(along[1]), float(-along[0]))
+    return np.vstack([straight, bow_out(start, walk.first, foot, pitch, outward)])
 
 
 def _lay_hanging(path: Route, n_links: int, down: tuple[float, float]) -> Walk:
@@ -166,7 +190,7 @@ def _lowest_wheel(path: Route, down: tuple[float, float]) -> int | None:
     """Return the inside wheel under which surplus chain hangs, or None (dimensionless)."""
     depth = [np.array(wheel.center) @ np.array(down) + wheel.radius for wheel in path.wheels]
     k = int(np.argmax(depth))
-    if path.wheels[k].side != 1 or path.wrap[k] < 0.5 * math.pi:
+    if path.wheels[k].side != 1 or path.wrap[k] < path.wheels[k].seat_step(path.pitch):
         return None
     middle = path.wrap_in[k] + 0.5 * path.wrap[k]
     drop = math.cos(middle) * down[0] + math.sin(middle) * down[1]

@@ -42,10 +42,10 @@ class Walk(NamedTuple):
     links_left: int
 
 
-def walk_round(
-    path: Route, n_links: int, reference: int, spacing: float, in_wrap: bool = False
-) -> Walk:
+def walk_round(path: Route, n_links: int, reference: int, spacing: float) -> Walk:
     """Walk from the exit of the reference wheel round to where the loop has to close.
+
+    What is left open is the last strand, up to the first seat of the reference wheel.
 
     Parameters
     ----------
@@ -57,9 +57,6 @@ def walk_round(
         Wheel at whose exit the walk starts (dimensionless).
     spacing : float
         Pin distance on the strands [m]: the pitch, or more where they are stretched.
-    in_wrap : bool
-        Whether the open stretch is the wrap of the reference wheel, the arriving pin lying
-        wherever it comes to lie; else it is the last strand, up to a seat of that wheel.
 
     Returns
     -------
@@ -70,22 +67,19 @@ def walk_round(
     leaving = _exit_place(path, reference, None)
     first = on_wheel(path.wheels[reference], leaving)
     pins, seats, seat_angle = [first], [reference], {reference: leaving}
-    for hop in range(1, count + int(in_wrap)):
+    for hop in range(1, count):
         k = (reference + hop) % count
         links, arriving = _arrival(path, k, pins[-1], spacing)
         stop = on_wheel(path.wheels[k], arriving)
         pins += [*evenly(pins[-1], stop, links), stop]
         seats += [-1] * (links - 1) + [k]
-        if k != reference:
-            seat_angle[k] = arriving
-            following = _wrap_places(path, k, arriving)
-            pins += [on_wheel(path.wheels[k], angle) for angle in following]
-            seats += [k] * len(following)
-    used = len(pins) - 1
-    if not in_wrap:
-        entry_angle, held = entry_place(path, reference, leaving)
-        first = on_wheel(path.wheels[reference], entry_angle)
-        used += held
+        seat_angle[k] = arriving
+        following = _wrap_places(path, k, arriving)
+        pins += [on_wheel(path.wheels[k], angle) for angle in following]
+        seats += [k] * len(following)
+    entry_angle, held = entry_place(path, reference, leaving)
+    first = on_wheel(path.wheels[reference], entry_angle)
+    used = len(pins) - 1 + held
     gap = float(np.linalg.norm(first - pins[-1]))
     return Walk(pins, seats, seat_angle, first, pins[-1], gap, n_links - used)
 

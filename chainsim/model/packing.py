@@ -1,0 +1,254 @@
+"""Packs a lift into the arrays of the kernels: parts, state vector, scratch space."""
+
+from __future__ import annotations
+
+import math
+from typing import NamedTuple
+
+import numpy as np
+
+from chainsim.kernels.balls import Touches
+from chainsim.kernels.guides import NearGuides
+from chainsim.kernels.layout import (
+    PER_WHEEL,
+    SPIN,
+    State,
+    aligned,
+    padded,
+    section_sizes,
+    view,
+)
+from chainsim.kernels.links import Chain, ChainWork
+from chainsim.kernels.motion import WORLD, Parts, Work, close_loop
+from chainsim.kernels.seats import Seats
+from chainsim.kernels.wheels import Frames, Near, Watch
+from chainsim.model import constants
+from chainsim.model.lift import Lift
+from chainsim.model.packing_balls import pack_features, pack_law, pack_pockets, rolls
+from chainsim.model.packing_carriers import pack_carriers
+from chainsim.model.packing_wheels import (
+    pack_drive,
+    pack_guides,
+    pack_mounts,
+    pack_wheels,
+    usual_pull,
+)
+
+LONGEST_WINDOW = 0.05
+"""Longest averaging window of the seat reserve [s]."""
+
+
+class Packed(NamedTuple):
+    """A lift in arrays.
+
+    Attributes
+    ----------
+    parts : Parts
+    work : Work
+    flat : ndarray, shape (n_state,)
+        State vector (mixed SI).
+    rate_flat : ndarray, shape (n_state,)
+        Its derivative.
+    ends : ndarray of int, shape (18,)
+        Section ends (dimensionless).
+    state, rate : State
+        Views of both.
+    """
+
+    parts: Parts
+    work: Work
+    flat: np.ndarray
+    rate_flat: np.ndarray
+    ends: np.ndarray
+    state: State
+    rate: State
+
+
+def seat_window(lift: Lift) -> float:
+    """Return the averaging window of the seat reserve, half of sqrt(h/g) [s]; h the lip's height.
+
+    Parameters
+    ----------
+    lift : Lift
+    """
+    if lift.scenario.carriers is None:
+        return 0.01
+    lip = max(lift.scenario.carriers.pocket.lip or 0.0, 0.5e-3)
+    return min(LONGEST_WINDOW, 0.5 * math.sqrt(lip / lift.scenario.frame.gravity))
+
+
+def ball_slots(lift: Lift) -> int:
+    """Return how many balls the lift can have in play at one time (dimensionless)."""
+    if not rolls(lift):
+        return 0
+    balls = lift.scenario.balls
+    queue = balls.feed.queue if balls.feed.kind == "trough" else 0
+    return len(lift.carrier_links) + int(queue) + 6
+
+
+def pack(lift: Lift, loaded: np.ndarray | None = None) -> Packed:
+    """Pack a lift at its laid position, at rest.
+
+    Parameters
+    ----------
+    lift : Lift
+    loaded : ndarray of bool, shape (n_carriers,), or None
+        Carriers that hold a ball rigidly.
+
+    Returns
+    -------
+    Packed
+    """
+    loaded = np.zeros(len(lift.carrier_links), bool) if loaded is None else loaded
+    parts = _parts(lift, loaded)
+    slots = ball_slots(lift)
+    n_wheels = len(lift.wheels)
+    sizes = section_sizes(lift.n_links, n_wheels, slots)
+    ends = np.cumsum(sizes)
+    flat, rate_flat = aligned(int(ends[-1])), aligned(int(ends[-1]))
+    state, rate = view(flat, ends), view(rate_flat, ends)
+    _place(lift, state)
+    return Packed(parts, _work(lift, slots), flat, rate_flat, ends, state, rate)
+
+
+def _parts(lift: Lift, loaded: np.ndarray) -> Parts:
+    """Pack what the lift is made of."""
+    blocks, bands, moment = pack_carriers(lift, loaded)
+    wheels = pack_wheels(lift)
+    return Parts(
+        chain=_chain(lift, moment),
+        wheels=wheels,
+        mounts=pack_mounts(lift),
+        drive=pack_drive(lift),
+        world=_world(lift),
+        blocks=blocks,
+        bands=bands,
+        guides=pack_guides(lift),
+        features=pack_features(lift),
+        law=pack_law(lift),
+        pockets=pack_pockets(lift),
+        reach=np.ascontiguousarray(wheels["tip_radius"]),
+    )
+
+
+def _chain(lift: Lift, moment: np.ndarray) -> Chain:
+    """Pack the chain."""
+    chain = lift.scenario.chain
+    size = padded(lift.n_links + 1)
+    mass = chain.link_mass
+    radius = chain.joint.friction * chain.joint.pin_radius
+    usual = chain.joint.moment + radius * usual_pull(lift)
+    has_joint = chain.joint.moment > 0.0 or radius > 0.0
+    inverse_mass, re, im = aligned(size), aligned(size), aligned(size)
+    inverse_mass[: lift.n_links] = 1.0 / mass
+    re[: lift.n_links], im[: lift.n_links] = moment.real, moment.imag
+    pitch = aligned(size)
+    pitch[: lift.n_links] = lift.pitch
+    bends = chain.front_bend or chain.back_bend
+    return Chain(
+        n=lift.n_links,
+        pitch=pitch,
+        stiffness=chain.link_stiffness,
+        damping=chain.link_damping * math.sqrt(chain.link_stiffness * mass),
+        play=chain.play,
+        inverse_mass=inverse_mass,
+        weight_re=re,
+        weight_im=im,
+        joint_moment=chain.joint.moment,
+        joint_radius=radius,
+        joint_stiffness=usual / constants.SLIP_AT_JOINT if has_joint else 0.0,
+        front_bend=chain.front_bend or 0.0,
+        back_bend=chain.back_bend or 0.0,
+        bend_stiffness=0.02 * chain.link_stiffness * chain.pitch**2 if bends else 0.0,
+        air=chain.air_damping,
+    )
+
+
+def _world(lift: Lift) -> np.ndarray:
+    """Pack the surroundings."""
+    world = np.zeros(1, WORLD)
+    gravity = lift.scenario.frame.gravity
+    world["gx"], world["gy"] = -gravity * lift.up[0], -gravity * lift.up[1]
+    world["zone_x"], world["zone_y"] = lift.up
+    world["zone"] = lift.unload_height
+    world["per_window"] = 1.0 / seat_window(lift)
+    world["margin"] = constants.SEARCH_MARGIN * lift.scenario.chain.pitch
+    return world
+
+
+def _work(lift: Lift, slots: int) -> Work:
+    """Set up scratch space."""
+    n, n_wheels = lift.n_links, len(lift.wheels)
+    size = padded(n + 2)
+    rows = [aligned(size) for _ in ChainWork._fields]
+    links = ChainWork(*rows)
+    links.tension_low[:] = np.inf
+    links.tension_peak[:] = -np.inf
+    near = n * max(1, n_wheels)
+    n_guides = max(1, len(lift.scenario.guide))
+    slots_kept = max(1, slots)
+    return Work(
+        links=links,
+        frames=Frames(*[np.zeros(n_wheels) for _ in Frames._fields]),
+        near=Near(
+            np.zeros(near, np.int64),
+            np.zeros(near, np.int64),
+            np.zeros(near),
+            np.zeros(near),
+            np.zeros(1, np.int64),
+        ),
+        near_guides=NearGuides(
+            np.zeros(n * n_guides, np.int64),
+            np.zeros(n * n_guides, np.int64),
+            np.zeros(1, np.int64),
+        ),
+        touches=Touches(
+            np.full((slots_kept, 8), -1, np.int64),
+            np.zeros(slots_kept, np.int64),
+            np.zeros(slots_kept),
+            np.zeros(slots_kept),
+            np.zeros(slots_kept),
+            np.zeros(slots_kept),
+            np.zeros(max(1, len(lift.carrier_links))),
+        ),
+        seats=Seats(
+            np.full(slots_kept, -1, np.int64),
+            np.zeros(slots_kept, np.int64),
+            np.zeros(slots_kept, np.int64),
+            np.zeros(1, np.int64),
+            np.zeros((1, slots_kept)),
+            np.zeros((1, slots_kept)),
+            np.full(slots_kept, np.inf),
+        ),
+        watch=Watch(np.zeros(1), np.zeros(n_wheels), np.zeros(n_wheels), np.zeros(n_wheels)),
+        reaction=np.zeros(n_wheels),
+        stop_force=np.zeros(n_wheels),
+        chain_torque=np.zeros(n_wheels),
+        last_damper=aligned(size),
+        last_rate=aligned(size),
+        power=np.zeros(16),
+        wheel_sums=np.zeros((n_wheels, 4)),
+        drive_sums=np.zeros(4),
+        search_in=np.zeros(1, np.int64),
+    )
+
+
+def _place(lift: Lift, state: State) -> None:
+    """Write the laid position into a state at rest."""
+    n = lift.n_links
+    state.x[:n], state.y[:n] = lift.laid.pin[:, 0], lift.laid.pin[:, 1]
+    close_loop(state, n)
+    for s, sprocket in enumerate(lift.scenario.sprocket):
+        base = PER_WHEEL * s
+        state.q[base + SPIN] = lift.laid.wheel_angle[s]
+        travel = float(lift.laid.travel[s])
+        kind = sprocket.mount.kind
+        if kind == "arm":
+            arm = np.subtract(lift.wheels[s].center, lift.wheels[s].pivot)
+            state.q[base + 2] = travel / float(np.hypot(*arm))
+        elif kind == "hung":
+            state.q[base] = -travel
+        elif kind in ("sliding", "spring", "counterweight"):
+            state.q[base] = travel
+            if kind == "counterweight":
+                state.q[base + 4] = travel

@@ -122,7 +122,13 @@ def outcome_cell(word: str) -> Markup:
 
 
 def reserve_text(reserve: float) -> str:
-    """A reserve in percent of its scale, or a dash where there is none."""
+    """A reserve in percent of its scale, or a dash where there is none.
+
+    Parameters
+    ----------
+    reserve : float
+        Margin over scale (dimensionless).
+    """
     return f"{reserve:.0%}" if abs(reserve) < float("inf") else "–"
 
 

@@ -8,6 +8,8 @@ from typing import Any, Protocol
 from chainsim.study.amounts import Amount, read_amount
 from chainsim.study.axes import Axis, Choice, ListedAxis, RangeAxis, SpreadAxis
 
+MOST_VALUES = 100_000
+"""Most values of one axis, and most points of a sample (dimensionless)."""
 _KINDS_OF_AXIS = ("values", "range", "together", "choice", "distribution")
 _KNOWN = ("name", "key", "count", "log", *_KINDS_OF_AXIS)
 _PARAMETERS = {  # kind of distribution -> (needed, optional), in ascending order where ordered
@@ -102,8 +104,9 @@ def _count(
     """Number of values of a range; a range of whole numbers lists each of them by default."""
     default = round(high.number - low.number) + 1 if low.whole and high.whole else None
     count = table.get("count", default)
-    if isinstance(count, bool) or not isinstance(count, int) or count < 2:
-        faults.add(f"{where}.count", count, "the number of values on this axis, at least 2")
+    if isinstance(count, bool) or not isinstance(count, int) or not 2 <= count <= MOST_VALUES:
+        rule = f"the number of values on this axis, 2 to {MOST_VALUES}"
+        faults.add(f"{where}.count", count, rule)
         return None
     if low.whole and high.whole and (high.number - low.number) % (count - 1):
         faults.add(

@@ -17,6 +17,7 @@ from typing import Any
 from chainsim.errors import CallError
 from chainsim.study.jobs import (
     NO_SPACE,
+    ONE_THREAD,
     Job,
     Outcome,
     failed_row,
@@ -182,7 +183,10 @@ class DaskEngine:
         # A task is put down after the first worker that dies under it; we try it again ourselves.
         dask.config.set({"distributed.scheduler.allowed-failures": 0})
         if self.slurm is not None:
-            return _slurm_cluster(self.slurm)
+            cluster = slurm_cluster(self.slurm)
+            most = int(self.slurm.get("jobs", _SLURM_DEFAULTS["jobs"]))
+            cluster.adapt(minimum_jobs=1, maximum_jobs=most)
+            return cluster
         from distributed import LocalCluster
 
         with one_thread_each():
@@ -227,29 +231,40 @@ def _distributed() -> Any:
     return distributed
 
 
-def _slurm_cluster(settings: Mapping[str, Any]) -> Any:
-    """Cluster whose workers are jobs of a SLURM queue, one core each."""
+def slurm_cluster(settings: Mapping[str, Any]) -> Any:
+    """Cluster whose workers are jobs of a SLURM queue, one core each; no job is sent yet.
+
+    Parameters
+    ----------
+    settings : mapping of str to object
+        `queue`, `account`, `walltime` (hours:minutes:seconds) and `memory` of a job.
+
+    Returns
+    -------
+    SLURMCluster
+        The cluster.
+
+    Raises
+    ------
+    CallError
+        If dask-jobqueue is not installed, or the wall time is not written so.
+    """
     try:
         from dask_jobqueue import SLURMCluster
     except ImportError:
         raise CallError("a SLURM queue needs: pip install chainsim[cluster]") from None
     chosen = {**_SLURM_DEFAULTS, **settings}
-    with one_thread_each():
-        cluster = SLURMCluster(
-            queue=chosen.get("queue"),
-            account=chosen.get("account"),
-            cores=1,
-            processes=1,
-            memory=chosen["memory"],
-            walltime=chosen["walltime"],
-            worker_extra_args=["--lifetime", f"{_lifetime(chosen['walltime'])}s", *_LEAVE_EARLY],
-            job_script_prologue=[
-                f"export {name}=1"
-                for name in ("NUMBA_NUM_THREADS", "OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS")
-            ],
-        )
-    cluster.adapt(minimum_jobs=1, maximum_jobs=int(chosen["jobs"]))
-    return cluster
+    return SLURMCluster(
+        queue=chosen.get("queue"),
+        account=chosen.get("account"),
+        cores=1,
+        processes=1,
+        memory=chosen["memory"],
+        walltime=chosen["walltime"],
+        worker_extra_args=["--lifetime", f"{_lifetime(chosen['walltime'])}s", *_LEAVE_EARLY],
+        job_script_prologue=[f"export {name}=1" for name in ONE_THREAD],
+        scheduler_options={"dashboard_address": None},
+    )
 
 
 def _lifetime(walltime: str) -> int:

@@ -20,6 +20,9 @@ from chainsim.study.store import DiskFull, Store, is_full
 
 SIMULATE = "chainsim.study.simulate:simulate"
 
+ONE_THREAD = ("NUMBA_NUM_THREADS", "OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS")
+"""Environment variables that hold a library to one thread when they are 1."""
+
 # States of an outcome beside those of a row: the sweep has to stop on these two.
 NO_SPACE = "no space"
 SET_UP = "set-up is wrong"
@@ -252,14 +255,8 @@ def one_thread_each() -> Any:
     None
         While the variables stand in this process' environment, for children to inherit.
     """
-    names = (
-        "NUMBA_NUM_THREADS",
-        "OMP_NUM_THREADS",
-        "OPENBLAS_NUM_THREADS",
-        "MKL_NUM_THREADS",
-    )
-    before = {name: os.environ.get(name) for name in names}
-    os.environ.update(dict.fromkeys(names, "1"))
+    before = {name: os.environ.get(name) for name in ONE_THREAD}
+    os.environ.update(dict.fromkeys(ONE_THREAD, "1"))
     try:
         yield
     finally:

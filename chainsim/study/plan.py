@@ -38,7 +38,7 @@ A plan is a TOML file::
 
     [keep]
     findings = ["carrying_strand_taut"]      # left out: all
-    summary = ["tension_peak"]               # left out: all
+    summary = ["peak_tension"]               # left out: all
     trajectories = false
 
     [engine]

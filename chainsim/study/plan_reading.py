@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import Any
 
 from chainsim.errors import CallError, Problem, ScenarioError
-from chainsim.study.axis_reading import read_axis
+from chainsim.study.axis_reading import MOST_VALUES, read_axis
 from chainsim.study.plan import (
     ENGINE_KINDS,
     PLAN_FORMAT,
@@ -21,6 +21,8 @@ from chainsim.study.plan import (
     Sample,
 )
 
+LARGEST_FILE = 1_000_000
+"""Longest plan file that is read [bytes]."""
 _TABLE = re.compile(r"\s*\[+\s*([^\]]+?)\s*\]+\s*(#.*)?")
 _KEY = re.compile(r"\s*(?:\"([^\"]+)\"|'([^']+)'|([A-Za-z0-9_.\-]+))\s*=")
 _TOP = (
@@ -152,8 +154,10 @@ def read_plan(path: str | Path) -> Plan:
     """
     path = Path(path)
     try:
+        if path.stat().st_size > LARGEST_FILE:
+            raise CallError(f"{path}: too long for a plan (over 1 MB)")
         text = path.read_text(encoding="utf-8-sig")
-    except (OSError, UnicodeDecodeError) as error:
+    except (OSError, UnicodeDecodeError, ValueError) as error:
         reason = getattr(error, "strerror", None) or "not UTF-8 text"
         raise CallError(f"{path}: the plan cannot be read ({reason})") from None
     return parse_plan(text, str(path), path.parent)
@@ -183,6 +187,9 @@ def parse_plan(text: str, file: str = "<text>", folder: Path = Path()) -> Plan:
     """
     try:
         data = tomllib.loads(text)
+    except RecursionError:
+        rule = "tables or lists are nested too deeply"
+        raise ScenarioError([Problem(file, None, "", "", rule)]) from None
     except tomllib.TOMLDecodeError as error:
         match = re.search(r"\(at line (\d+)", str(error))
         line = int(match[1]) if match else None
@@ -241,8 +248,8 @@ def _sample(data: dict[str, Any], axes: list[Any], faults: Faults) -> Sample:
                 )  # fmt: skip
         return Sample()
     count = _whole(table, "count", 0, 1, faults, "sample.")
-    if not count:
-        faults.add("sample.count", table.get("count"), "the number of points, at least 1")
+    if not count or count > MOST_VALUES:
+        faults.add("sample.count", table.get("count"), f"the number of points, 1 to {MOST_VALUES}")
     elif kind in ("sobol", "indices") and count & (count - 1):
         faults.add("sample.count", count, "a power of 2, so that the points stay balanced")
     return Sample(kind, count or 0)
@@ -259,11 +266,29 @@ def _keep(data: dict[str, Any], faults: Faults) -> Keep:
         if not isinstance(value, list) or not all(isinstance(name, str) for name in value):
             faults.add(f"keep.{key}", value, 'a list of names, or "all"')
             value = []
+        for name in value:
+            _check_name(f"keep.{key}", name, faults)
         names[key] = tuple(value)
     trajectories = table.get("trajectories", False)
     if not isinstance(trajectories, bool):
         faults.add("keep.trajectories", trajectories, "true or false")
     return Keep(names["findings"], names["summary"], bool(trajectories))
+
+
+def _check_name(key: str, name: str, faults: Faults) -> None:
+    """Note a finding or summary value that no run gives."""
+    if key == "keep.findings":
+        from chainsim.findings.table import ROWS
+
+        known = [row.judge.__name__ for row in ROWS]
+    else:
+        from chainsim.analysis import UNITS
+
+        known = [*UNITS, "stop_reason", "complete", "axle_load", "takeup_low", "takeup_high"]
+    if name.partition(".")[0] not in known:
+        near = difflib.get_close_matches(name, known, 1)
+        hint = f"did you mean {near[0]!r}?" if near else f"known are {', '.join(known)}"
+        faults.add(key, name, f"no run gives this; {hint}")
 
 
 def _engine(data: dict[str, Any], faults: Faults) -> EngineChoice:

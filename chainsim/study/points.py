@@ -12,12 +12,14 @@ from typing import Any
 
 from chainsim import __version__
 from chainsim.errors import CallError, ChainsimError, Problem, ScenarioError
-from chainsim.study.axes import Axis, Choice
+from chainsim.study.axes import Axis, Choice, RangeAxis
 from chainsim.study.plan import Plan
 from chainsim.study.sampling import index_design, point_seed, shares
 
 # Raised by one whenever rows gain or change a meaning; old rows are then run again.
 RESULTS_FORMAT = 1
+MOST_POINTS = 200_000
+"""Most points that one driver lists, which takes it about an hour (dimensionless)."""
 _ID_DIGITS = 16
 _NEAR_THE_ENDS = (0.001, 0.999)  # of an axis; a distribution has no ends to try
 
@@ -115,7 +117,7 @@ def number_of_points(plan: Plan) -> int:
         return plan.sample.count
     total = 1
     for axis in plan.axes:
-        total *= len(axis.choices or ())
+        total *= axis.count if isinstance(axis, RangeAxis) else len(axis.choices or ())
     return total
 
 
@@ -137,13 +139,18 @@ def points(plan: Plan, part: tuple[int, int] | None = None) -> Iterator[Point]:
     Raises
     ------
     CallError
-        If `part` is not 1 to n of n.
+        If `part` is not 1 to n of n, or the plan asks for more than `MOST_POINTS` runs.
     ScenarioError
         If a key of the plan is wrong by itself (see `check_axes`).
     """
     first, step = part or (1, 1)
     if not 1 <= first <= step:
         raise CallError(f"part {first}/{step}: needs a number from 1 to {step}")
+    if number_of_points(plan) > MOST_POINTS * step:
+        raise CallError(
+            f"{plan.file}: the plan asks for {number_of_points(plan):,} runs, and a driver takes "
+            f"{MOST_POINTS:,} at most; thin the axes, take a [sample], or divide it with --part"
+        )
     scenarios = BaseScenarios(plan.folder)
     check_axes(plan, scenarios)
     for index, choices in enumerate(combinations(plan)):

@@ -159,6 +159,10 @@ range = ["8 mm", "1 in"]
 kind = "sobol"
 count = 48
 
+[keep]
+findings = ["links_hold", "balls_fall"]
+summary = ["peak_tenson"]
+
 [engine]
 kind = "many"
 workers = 0
@@ -172,8 +176,10 @@ workers = 0
         ("axis.1", 5),
         ("axis.2.range", 11),
         ("sample.count", 15),
-        ("engine.kind", 18),
-        ("engine.workers", 19),
+        ("keep.findings", 18),
+        ("keep.summary", 19),
+        ("engine.kind", 22),
+        ("engine.workers", 23),
     }
 
 
@@ -305,3 +311,26 @@ def test_a_missing_scenario_is_told_by_name(folder):
     plan = plan_in(folder, PLAN.replace('"lift.toml"', '"gone.toml"'))
     with pytest.raises(ScenarioError, match=r"gone\.toml"):
         check_axes(plan, BaseScenarios(folder))
+
+
+def test_a_plan_that_could_never_be_listed_is_refused_at_once(folder):
+    wide = PLAN.replace("count = 4", "count = 90000")
+    with pytest.raises(CallError, match=r"1,080,000 runs.*--part"):
+        next(points(plan_in(folder, wide)))
+    assert next(points(plan_in(folder, wide), (1, 1000))).index == 0
+    assert "2 to 100000" in faults(wide.replace("90000", "1000000000"))[0].rule
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "",
+        "\x00",
+        "axis = 3",
+        "[[axis]]\n[[axis.choice]]",
+        "a = " + "[" * 5000,
+        "sample = 1\nkeep = []",
+    ],
+)
+def test_nonsense_is_a_fault_and_nothing_worse(text):
+    assert faults(text)

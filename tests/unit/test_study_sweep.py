@@ -231,3 +231,30 @@ def test_durations_and_sizes_as_people_say_them():
 def test_engines_are_chosen_by_the_plan():
     assert isinstance(engine_of(EngineChoice(kind="serial")), SerialEngine)
     assert engine_of(EngineChoice(workers=3)).workers == 3
+
+
+def test_a_slurm_job_has_one_core_one_thread_and_leaves_before_it_is_ended():
+    pytest.importorskip("dask_jobqueue", reason="the extra [cluster] is not installed")
+    from chainsim.errors import CallError
+    from chainsim.study.cluster import slurm_cluster
+
+    with slurm_cluster({"queue": "short", "walltime": "00:50:00", "memory": "3 GB"}) as cluster:
+        script = cluster.job_script()
+    for line in ("-p short", "--cpus-per-task=1", "-t 00:50:00", "export NUMBA_NUM_THREADS=1"):
+        assert line in script
+    assert "--lifetime 2700s" in script and "--nthreads 1" in script
+    with pytest.raises(CallError, match="hours, minutes and seconds"):
+        slurm_cluster({"walltime": "50 min"})
+
+
+def test_live_progress_draws_a_table(store):
+    from chainsim.study.progress import LiveProgress, progress
+
+    stream = io.StringIO()
+    points = points_of([{"mass": float(m)} for m in range(4)])
+    settings = Settings(task=f"{TASKS}:broken")
+    run_points(points, store, SerialEngine(), settings, LiveProgress(stream))
+    text = stream.getvalue()
+    assert "0 done, 4 failed" in text
+    assert "division by zero" in text
+    assert type(progress(io.StringIO())) is PlainProgress

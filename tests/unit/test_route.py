@@ -7,6 +7,7 @@ import pytest
 
 from chainsim.errors import LayoutError
 from chainsim.model.route import Wheel, lay_chain, route
+from chainsim.model.tooth import gap, tooth_form
 
 PITCH = 0.010
 
@@ -175,6 +176,36 @@ def test_every_layout_starts_unstrained_and_seated(wheels, n_links):
                 [math.remainder(a, wheel.seat_step(PITCH)) for a in angle]
             )
             assert away == pytest.approx(0.0, abs=tolerance)
+
+
+@pytest.mark.parametrize(("wheels", "n_links"), LAYOUTS.values(), ids=LAYOUTS.keys())
+def test_no_tooth_stands_in_a_pin(wheels, n_links):
+    laid = lay_chain(wheels, PITCH, n_links)
+    for k, wheel in enumerate(wheels):
+        if wheel.teeth:
+            deepest = deepest_contact(wheel, laid.pin - laid.wheel_center[k], laid.wheel_angle[k])
+            assert deepest > -0.03e-3
+
+
+@pytest.mark.parametrize("teeth", [6, 7, 8, 13])
+@pytest.mark.parametrize("surplus", np.linspace(0.0, 3.0, 13))
+def test_slack_between_fixed_axles_leaves_pins_free_of_teeth_and_unstrained(teeth, surplus):
+    wheels = [HEAD, sprocket("tail", teeth, (0.0, 0.5 * surplus * PITCH))]
+    n_links = math.ceil(route([HEAD, sprocket("tail", teeth, (0.0, 0.0))], PITCH).links)
+    laid = lay_chain(wheels, PITCH, n_links)
+    deepest = deepest_contact(wheels[1], laid.pin - laid.wheel_center[1], laid.wheel_angle[1])
+    assert deepest > -0.05 * PITCH  # one spare link shares many teeth: they push it out softly
+    assert link_lengths(laid.pin) == pytest.approx(PITCH, rel=1e-9)
+    assert crossings(laid.pin) == 0
+
+
+def deepest_contact(wheel: Wheel, offset: np.ndarray, angle: float) -> float:
+    """Return the least gap of a 5 mm roller on a wheel at an angle [m]."""
+    tooth = tooth_form(wheel.teeth, PITCH, 0.005)
+    cos, sin = math.cos(angle), math.sin(angle)
+    in_wheel = offset @ np.array([[cos, -sin], [sin, cos]])
+    near = in_wheel[np.hypot(*in_wheel.T) < tooth.outer_radius + 0.003]
+    return min(gap(tooth, pin).distance for pin in near)
 
 
 @pytest.mark.parametrize(("wheels", "n_links"), LAYOUTS.values(), ids=LAYOUTS.keys())

@@ -15,6 +15,12 @@ from chainsim.analysis.tilt import ball_link_lean
 KEPT_FATES = frozenset({"delivered", "aboard"})
 """Fates of balls that were not lost."""
 
+NEEDED = (
+    "pins/position", "pins/velocity", "links/tension", "balls/number", "balls/pocket",
+    "balls/acceleration", "balls/seat_reserve",
+)  # fmt: skip
+"""Channels without which nothing is known of the time before a loss."""
+
 BEFORE = 0.5
 """Time before a loss that is looked at [s]."""
 
@@ -166,7 +172,7 @@ def _least(values: np.ndarray) -> float:
 
 def _last_ride(s: Survey, number: int) -> tuple[np.ndarray, int] | None:
     """Samples of the half second before a ball was last seated, and its slot."""
-    if not s.has("balls/number", "balls/pocket", "balls/acceleration", "balls/seat_reserve"):
+    if not s.has(*NEEDED):
         return None
     rode = (s["balls/number"] == number) & carried_balls(s)
     samples, slots = np.nonzero(rode)

@@ -49,6 +49,7 @@ def run_summary(rec: Any, findings: Sequence[Any] | None = None) -> RunSummary:
     -------
     RunSummary
         Flat scalars; findings as ``<name>.outcome``, ``<name>.value`` and ``<name>.margin``.
+        What needs channels that were not kept is left out.
     """
     s = survey(rec)
     row: dict[str, Any] = {
@@ -57,7 +58,8 @@ def run_summary(rec: Any, findings: Sequence[Any] | None = None) -> RunSummary:
         "duration": float(s.time[-1]) if len(s.time) else 0.0,
     }
     if len(s.time) > 1:
-        row |= _chain(s) | _balls(s) | _drive(s)
+        parts = [part(s) for part, needs in _PARTS if s.has(*needs)]
+        row |= {name: value for part in parts for name, value in part.items()}
     for finding in s.rec.findings if findings is None else findings:
         row[f"{finding.name}.outcome"] = finding.outcome
         row[f"{finding.name}.value"] = finding.value
@@ -135,3 +137,11 @@ def _drive(s: Survey) -> dict[str, Any]:
         "efficiency": work.efficiency if work else None,
         "energy_residual": audit.residual_of_flows if audit else None,
     }
+
+
+_PARTS = (
+    (_chain, ("pins/position", "pins/velocity", "links/tension")),
+    (_balls, ("pins/position", "balls/acceleration")),
+    (_drive, ("drive/torque", "sprockets/rate", "sprockets/angle")),
+)
+"""Parts of the row, each with the channels that it needs."""

@@ -87,7 +87,7 @@ def carrier_tilts(rec: Any) -> list[Tilt]:
         One for each carrier that rode loaded on a carrying strand.
     """
     s = survey(rec)
-    if not s.has("balls/pocket", "geometry/carrier_link"):
+    if not s.has("balls/pocket", "geometry/carrier_link", "pins/position", "links/tension"):
         return []
     samples = np.flatnonzero(s.is_steady) if s.steady else np.arange(len(s.time))
     samples = samples[:: max(1, len(samples) // MOST_SAMPLES)]

@@ -193,3 +193,13 @@ def test_short_recordings_are_judged_as_far_as_they_go(n):
     assert len(judge(short)) == 13
     assert verdict(judge(short), situations(short))
     assert "duration" in run_summary(short, [])
+
+
+def test_a_recording_that_keeps_little_says_what_it_lacks(rec):
+    bulk = ("pins/position", "pins/velocity", "links/tension", "balls/acceleration")
+    small = Overlay(rec, dict.fromkeys(bulk))
+    by_name = {finding.name: finding for finding in judge(small)}
+    assert by_name["links_hold"].why == "not enough data"
+    assert "pins/position" in by_name["strand_in_clearance"].note
+    assert by_name["no_tooth_skipped"].outcome == "holds"
+    assert "torque_peak" in run_summary(small, []) and "ripple" not in run_summary(small, [])

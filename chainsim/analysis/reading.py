@@ -145,7 +145,8 @@ class Reading:
     @worked_once
     def n_pins(self) -> int:
         """Pins in the chain [dimensionless]."""
-        return int(self.position.shape[1])
+        pitch = self.channel("geometry/pitch")
+        return self.position.shape[1] if pitch is None else len(pitch)
 
     @worked_once
     def pitch(self) -> float:

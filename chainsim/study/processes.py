@@ -12,6 +12,7 @@ import threading
 import time
 from collections import deque
 from collections.abc import Callable, Generator, Iterable, Iterator
+from pathlib import Path
 from typing import IO, Any
 
 from chainsim.errors import RunError
@@ -21,17 +22,18 @@ from chainsim.study.store import DiskFull, Store
 
 TRIES = 2
 _TICK = 0.25  # longest silence between two reports to the caller [s]
-_IDLE_DEATHS = 3  # per worker, of processes that never took a job
+_STILLBORN = 3  # per worker, of processes that ended before they were ready
 _FAREWELL = 2.0  # time a worker has to leave by itself before it is ended [s]
 
 
 class _Worker:
     """A worker process and what it has in hand."""
 
-    def __init__(self, reports: queue.SimpleQueue[tuple[_Worker, Any]]) -> None:
+    def __init__(self, reports: queue.SimpleQueue[tuple[_Worker, Any]], log: IO[str]) -> None:
         self.job: Job | None = None
         self.since = 0.0
         self.too_long = False
+        self.ready = False
         # Its own process group: Ctrl-C reaches the driver alone, which then decides.
         apart: dict[str, Any] = (
             {"creationflags": getattr(subprocess, "CREATE_NEW_PROCESS_GROUP", 0)}
@@ -43,6 +45,7 @@ class _Worker:
                 [sys.executable, "-m", "chainsim.study.worker"],
                 stdin=subprocess.PIPE,
                 stdout=subprocess.PIPE,
+                stderr=log,
                 text=True,
                 encoding="utf-8",
                 **apart,
@@ -107,7 +110,7 @@ class ProcessEngine:
         self._again: deque[Job] = deque()
         self._tries: dict[str, int] = {}
         self._warm = False
-        self._idle_deaths = 0
+        self._stillborn = 0
 
     @property
     def processes(self) -> list[int]:
@@ -139,7 +142,8 @@ class ProcessEngine:
             self._again.append(first)
             if not self._team:
                 self._warm = False
-                self._team = [_Worker(self._reports) for _ in range(self.workers)]
+                self._log = log_of(first)
+                self._team = [_Worker(self._reports, self._log) for _ in range(self.workers)]
                 self._team[0].send({"warm": first.to_data()})
             while True:
                 self._hand_out(waiting, stopping)
@@ -154,6 +158,8 @@ class ProcessEngine:
         """End all workers, those at once that are still at work."""
         for worker in self._team:
             worker.end(at_once=worker.job is not None)
+        if self._team:
+            self._log.close()
         self._team = []
 
     def _hand_out(self, waiting: Iterator[Job], stopping: Callable[[], bool]) -> None:
@@ -176,6 +182,9 @@ class ProcessEngine:
             return None
         if answer is None:
             return self._buried(worker)
+        if "ready" in answer:
+            worker.ready = True
+            return None
         if "warm" in answer:
             self._warm = True
             return None
@@ -195,12 +204,14 @@ class ProcessEngine:
         if worker not in self._team:
             return None
         job = worker.job
-        self._team[self._team.index(worker)] = _Worker(self._reports)
+        self._team[self._team.index(worker)] = _Worker(self._reports, self._log)
         self._warm = True  # if it died while compiling, the others compile for themselves
+        if not worker.ready:
+            self._count_stillbirth()
         if job is None:
-            self._idle_deaths += 1
-            if self._idle_deaths > _IDLE_DEATHS * self.workers:
-                raise RunError("worker processes end as soon as they are started; see above")
+            return None
+        if not worker.ready:  # no fault of the job
+            self._again.appendleft(job)
             return None
         store = Store(job.folder)
         row = store.read(job.id)
@@ -215,12 +226,35 @@ class ProcessEngine:
         how = _ending(worker.process.returncode)
         return self._failed(job, "killed", f"its process {how}, {tries} times", tries)
 
+    def _count_stillbirth(self) -> None:
+        self._stillborn += 1
+        if self._stillborn > _STILLBORN * self.workers:
+            raise RunError(
+                f"worker processes end as soon as they are started; see {self._log.name}"
+            )
+
     def _failed(self, job: Job, code: str, text: str, tries: int) -> Outcome:
         try:
             Store(job.folder).write(failed_row(job, code, text, tries))
         except DiskFull as error:
             return Outcome(job.id, NO_SPACE, NO_SPACE, str(error))
         return Outcome(job.id, FAILED, code, text)
+
+
+def log_of(job: Job) -> IO[str]:
+    """Open the file that takes what workers print, so that it never disturbs a live table.
+
+    Parameters
+    ----------
+    job : Job
+        Any job of the sweep; the file stands in its folder.
+
+    Returns
+    -------
+    file
+        The file, open for appending.
+    """
+    return Path(job.folder, "workers.log").open("a", encoding="utf-8")
 
 
 def _ending(code: int) -> str:

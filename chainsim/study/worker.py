@@ -2,7 +2,8 @@
 
 Jobs arrive as lines of JSON on standard input and outcomes leave as lines of JSON on standard
 output. It is a program of its own rather than a copy of its parent, so that sweeps start from
-notebooks and unguarded scripts alike. What a run prints goes to standard error. When the
+notebooks and unguarded scripts alike. What a run prints goes to standard error,
+which the driver turns into a file. When the
 driver goes, its end of the pipe closes and the worker ends at once: a driver that was killed
 and started again never meets a worker of its former life.
 """
@@ -25,11 +26,12 @@ def main() -> None:
     os.dup2(2, 1)
     jobs: queue.SimpleQueue[dict[str, Any]] = queue.SimpleQueue()
     threading.Thread(target=_listen, args=(sys.stdin, jobs), daemon=True).start()
+    answer: dict[str, Any] = {"ready": os.getpid()}
     while True:
-        message = jobs.get()
-        answer = _warm(message["warm"]) if "warm" in message else _outcome(message["job"])
         answers.write(json.dumps(answer) + "\n")
         answers.flush()
+        message = jobs.get()
+        answer = _warm(message["warm"]) if "warm" in message else _outcome(message["job"])
 
 
 def _listen(source: TextIO, jobs: queue.SimpleQueue[dict[str, Any]]) -> None:

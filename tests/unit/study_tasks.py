@@ -66,6 +66,12 @@ def busy(job: Job) -> dict:
     return cheap(job)
 
 
+def chatty(job: Job) -> dict:
+    """Prints, as compilers and libraries do."""
+    print("hello from a run")
+    return cheap(job)
+
+
 def recorded(job: Job) -> dict:
     """Writes a recording of 20 kB beside its row, as a simulation would."""
     out = recording_path(job)

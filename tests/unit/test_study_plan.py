@@ -5,6 +5,7 @@ from __future__ import annotations
 import itertools
 import json
 from collections import Counter
+from pathlib import Path
 
 import numpy as np
 import pytest
@@ -334,3 +335,11 @@ def test_a_plan_that_could_never_be_listed_is_refused_at_once(folder):
 )
 def test_nonsense_is_a_fault_and_nothing_worse(text):
     assert faults(text)
+
+
+def test_the_demo_plan_is_accepted_point_by_point():
+    demo = Path(__file__).parents[2] / "scenarios" / "plans" / "head-or-tail.toml"
+    plan = read_plan(demo)
+    listed = list(points(plan))
+    assert len(listed) == number_of_points(plan) == 90
+    assert [point.refusal for point in listed] == [None] * 90

@@ -258,3 +258,18 @@ def test_live_progress_draws_a_table(store):
     assert "0 done, 4 failed" in text
     assert "division by zero" in text
     assert type(progress(io.StringIO())) is PlainProgress
+
+
+def test_what_runs_print_goes_to_a_file_and_not_into_the_answers(store, capfd):
+    points = points_of([{"mass": float(m)} for m in range(3)])
+    tally = run_points(points, store, ProcessEngine(1), Settings(task=f"{TASKS}:chatty"))
+    assert tally.computed == 3
+    assert (store.folder / "workers.log").read_text().count("hello from a run") == 3
+    assert "hello" not in "".join(capfd.readouterr())
+
+
+def test_workers_that_never_start_stop_the_sweep_with_a_hint(store, monkeypatch):
+    monkeypatch.setenv("PYTHONHOME", "/nowhere")
+    points = points_of([{"mass": 1.0}])
+    with pytest.raises(RunError, match=r"workers\.log"):
+        run_points(points, store, ProcessEngine(1), Settings(task=f"{TASKS}:cheap"))

@@ -6,7 +6,12 @@ import math
 from dataclasses import dataclass
 from typing import Any, Literal
 
-from chainsim.closed_forms import growth_at_tip, least_hung_weight, least_lifting_force
+from chainsim.closed_forms import (
+    growth_at_tip,
+    least_hung_weight,
+    least_lifting_force,
+    take_up_bounce_frequency,
+)
 from chainsim.study.heights import height_of
 from chainsim.study.limit_questions import takeup_sprocket
 
@@ -147,6 +152,25 @@ def _takeup(scenario: Any) -> Estimate:
     return Estimate(max(pull, 0.0) * factor, f"{text} (free body, standing still)")
 
 
+def _speed(scenario: Any) -> Estimate:
+    tail = _tail(scenario)
+    if tail.mount.kind != "hung":
+        return Estimate(None, "the closed form is that of a hung take-up that bounces")
+    links = height_of(scenario) / scenario.chain.pitch
+    frequency = take_up_bounce_frequency(
+        tail.mount.mass + wrapped_mass(scenario, tail),
+        links * _mass_of_link(scenario),
+        carried_mass(scenario),
+        links,
+        scenario.chain.link_stiffness,
+    )
+    return Estimate(
+        frequency * scenario.chain.pitch,
+        "the tooth rate meets the take-up's bounce on its chain, which is only one of the ways "
+        "in which speed can fail",
+    )
+
+
 def _height(scenario: Any) -> Estimate:
     tail = _tail(scenario)
     if scenario.drive.sprocket != tail.name or tail.mount.kind not in ("hung", "sliding"):
@@ -178,4 +202,4 @@ def _leans(scenario: Any) -> bool:
     return abs(math.atan2(x1 - x0, abs(y1 - y0))) > math.radians(2.0)
 
 
-_FORMS = {"takeup": _takeup, "height": _height, "wear": _wear}
+_FORMS = {"takeup": _takeup, "speed": _speed, "height": _height, "wear": _wear}

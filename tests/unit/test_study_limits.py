@@ -8,6 +8,7 @@ from chainsim.errors import CallError
 from chainsim.scenario import parse_scenario
 from chainsim.study.bench import Bench, Variant
 from chainsim.study.engines import SerialEngine
+from chainsim.study.heights import height_of, raised
 from chainsim.study.limit_estimates import carried_mass, estimate, wrapped_mass
 from chainsim.study.limit_questions import number_at, question
 from chainsim.study.limits import Probe, find_limit
@@ -209,3 +210,34 @@ def test_a_run_that_could_not_be_completed_counts_as_failing():
         row = one.rows([Variant("impossible", {"sprocket.tail.mount.mass": -1.0})])[0]
     assert row.failure.code == "refused"
     assert Probe(-1.0, row).outcome(()) == "fails"
+
+
+def test_the_speed_estimate_is_where_the_tooth_rate_meets_the_bounce():
+    # 52 links of each strand side by side under 0.3 kg and the wrap: by hand
+    # f = sqrt(2 k / (n (m + (2 strands + balls) / 3))) / 2 pi, v = f p (Rayleigh's rule).
+    scenario = lift()
+    link = scenario.chain.link_mass + scenario.carriers.mass / 4
+    mass = 0.3 + 4 * link + (2 * 52 * link + THRESHOLD) / 3
+    by_hand = (2 * scenario.chain.link_stiffness / 52 / mass) ** 0.5 / 6.283185307179586 * 0.01
+    assert estimate(scenario, "speed").value == pytest.approx(by_hand, rel=1e-9)
+    assert estimate(scenario, "drive.ramp").value is None
+
+
+def test_the_height_estimate_is_where_the_balls_outweigh_what_hangs():
+    scenario = lift()
+    per_meter = 20e-3 / 40e-3
+    by_hand = (0.3 + wrap(scenario)) / per_meter
+    assert estimate(scenario, "height").value == pytest.approx(by_hand, rel=1e-9)
+    head = scenario.with_values({"drive.sprocket": "head"})
+    assert estimate(head, "height").value is None
+
+
+def test_a_taller_lift_has_more_links_and_nothing_else_changed():
+    text = LIFT + '[[wall]]\nname = "back"\npoints = [["60 mm", "-50 mm"], ["60 mm", "500 mm"]]\n'
+    scenario = parse_scenario(text)
+    taller = scenario.with_values(raised(scenario, 0.08, 112))
+    assert taller.chain.links == 112 + 2 * 8
+    assert height_of(taller) == pytest.approx(0.6)
+    assert [point[1] for point in taller.wall[0].points] == pytest.approx([-0.05, 0.58])
+    assert taller.balls.unload_at == pytest.approx(scenario.balls.unload_at + 0.08)
+    assert taller.sprocket[1].mount.mass == scenario.sprocket[1].mount.mass

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import html
-from typing import NamedTuple
 
 import numpy as np
 
@@ -11,37 +10,21 @@ from chainsim.model.lift import Lift
 from chainsim.report.layout_marks import arrow, dashed, measure, round_length
 from chainsim.report.layout_notes import Note, strand_notes, wheel_notes
 from chainsim.report.layout_parts import shapes_of, spots_of
+from chainsim.report.layout_sheet import (
+    BELOW,
+    BORDER,
+    LINE,
+    MEASURES,
+    MOST_MEASURES,
+    TEXT,
+    Sheet,
+    fitting_scale,
+    scale_text,
+)
 from chainsim.report.sketch import extent, layout_sketch
 from chainsim.report.style import FAINT, GRID, INK, PAPER, STEEL, TENSION_COLORS
 
 __all__ = ["layout_sketch", "layout_svg"]
-
-SCALES = (5, 2, 1, 1 / 2, 1 / 2.5, 1 / 5, 1 / 10, 1 / 20, 1 / 25, 1 / 50, 1 / 100)
-"""Scales to choose from, paper over lift (dimensionless); usual ones of technical drawing."""
-
-ROOM = (110.0, 210.0)
-"""Greatest width and height of the picture on the paper [mm]: a sheet of A4 with its notes."""
-
-BORDER = 8.0
-"""Paper round everything [mm]."""
-
-MOST_MEASURES = 3
-"""Measures along one axis (dimensionless)."""
-
-MEASURES = 22.0
-"""Room on the left for the measures of height [mm]."""
-
-BELOW = 18.0
-"""Room below the picture for measures across and for what hangs [mm]."""
-
-BESIDE = 68.0
-"""Room on the right for notes [mm]."""
-
-TEXT = 2.6
-"""Height of the letters [mm]."""
-
-LINE = 4.0
-"""From one line of text to the next [mm]."""
 
 STYLES = {
     "wall": f'stroke="{STEEL}" stroke-width="0.7"',
@@ -59,39 +42,6 @@ STYLES = {
 """Look of each kind of shape."""
 
 
-class _Sheet(NamedTuple):
-    """How places of the lift [m] come to lie on the paper [mm]; `noted`: height of all notes."""
-
-    scale: float
-    low: np.ndarray
-    high: np.ndarray
-    mirrored: bool
-    noted: float
-
-    @property
-    def picture(self) -> np.ndarray:
-        """Size of the picture [mm], shape (2,)."""
-        return 1e3 * self.scale * (self.high - self.low)
-
-    @property
-    def size(self) -> tuple[float, float]:
-        """Width and height of the paper [mm]."""
-        width, height = self.picture
-        return (
-            max(MEASURES + width + BESIDE, 150.0) + 2.0 * BORDER,
-            max(height + BELOW, self.noted) + 5.0 * LINE + 2.0 * BORDER,
-        )
-
-    def place(self, points: np.ndarray) -> np.ndarray:
-        """Return places on the paper [mm], y downward, in the shape of `points` [m]."""
-        across = points[..., 0] - self.low[0]
-        if self.mirrored:
-            across = self.high[0] - points[..., 0]
-        down = self.high[1] - points[..., 1]
-        on_paper = 1e3 * self.scale * np.stack([across, down], axis=-1)
-        return on_paper + [BORDER + MEASURES, BORDER + 2.0 * LINE]
-
-
 def layout_svg(lift: Lift) -> str:
     """Draw a lift to scale.
 
@@ -107,11 +57,9 @@ def layout_svg(lift: Lift) -> str:
         right, scale and view below.
     """
     low, high = extent(lift)
-    ratio = [min(ROOM / (1e3 * s * (high - low))) for s in SCALES]
-    scale = next((s for s, fit in zip(SCALES, ratio, strict=True) if fit >= 1.0), SCALES[-1])
     notes = wheel_notes(lift) + strand_notes(lift)
     noted = sum((1.5 + len(note.lines)) * LINE for note in notes)
-    sheet = _Sheet(scale, low, high, lift.scenario.view == "back", noted)
+    sheet = Sheet(fitting_scale(high - low), low, high, lift.scenario.view == "back", noted)
     width, height = sheet.size
     content = [
         _shapes(lift, sheet),
@@ -131,23 +79,7 @@ def layout_svg(lift: Lift) -> str:
     )
 
 
-def scale_text(scale: float) -> str:
-    """Write a scale as drawings do.
-
-    Parameters
-    ----------
-    scale : float
-        Paper over lift (dimensionless).
-
-    Returns
-    -------
-    str
-        Such as `1:2.5` or `2:1`.
-    """
-    return f"{scale:g}:1" if scale > 1.0 else f"1:{1.0 / scale:g}"
-
-
-def _shapes(lift: Lift, sheet: _Sheet) -> str:
+def _shapes(lift: Lift, sheet: Sheet) -> str:
     """Draw walls, wheels, chain, carriers and balls, each kind in its group."""
     words = []
     for shape in shapes_of(lift):
@@ -165,7 +97,7 @@ def _shapes(lift: Lift, sheet: _Sheet) -> str:
     return "".join(words)
 
 
-def _axles(lift: Lift, sheet: _Sheet) -> str:
+def _axles(lift: Lift, sheet: Sheet) -> str:
     """Draw center marks, and what weighs on movable axles as a plumb arrow."""
     words = []
     down = np.array([-1.0 if sheet.mirrored else 1.0, -1.0]) * (-np.array(lift.up))
@@ -182,7 +114,7 @@ def _axles(lift: Lift, sheet: _Sheet) -> str:
     return "".join(words)
 
 
-def _travel_arrows(lift: Lift, sheet: _Sheet) -> str:
+def _travel_arrows(lift: Lift, sheet: Sheet) -> str:
     """Draw the direction of travel beside every strand."""
     words = []
     for strand in lift.strands:
@@ -197,7 +129,7 @@ def _travel_arrows(lift: Lift, sheet: _Sheet) -> str:
     return "".join(words)
 
 
-def _heights(lift: Lift, sheet: _Sheet) -> str:
+def _heights(lift: Lift, sheet: Sheet) -> str:
     """Measure the axles upward from the lowest one, on the left."""
     centers = lift.laid.wheel_center
     foot = float(centers[:, 1].min())
@@ -214,7 +146,7 @@ def _heights(lift: Lift, sheet: _Sheet) -> str:
     return "".join(words)
 
 
-def _widths(lift: Lift, sheet: _Sheet) -> str:
+def _widths(lift: Lift, sheet: Sheet) -> str:
     """Measure the axles across from the one on the left, below."""
     centers = lift.laid.wheel_center
     levels = _levels(centers[:, 0])
@@ -236,7 +168,7 @@ def _levels(places: np.ndarray) -> list[float]:
     return away[:MOST_MEASURES]
 
 
-def _notes(notes: list[Note], sheet: _Sheet) -> str:
+def _notes(notes: list[Note], sheet: Sheet) -> str:
     """Write the notes on the right, each as near to its part as the others let it."""
     x = BORDER + MEASURES + float(sheet.picture[0]) + 10.0
     top, words = BORDER + 2.0 * LINE, []
@@ -259,7 +191,7 @@ def _notes(notes: list[Note], sheet: _Sheet) -> str:
     return "".join(words)
 
 
-def _title_and_foot(lift: Lift, sheet: _Sheet) -> str:
+def _title_and_foot(lift: Lift, sheet: Sheet) -> str:
     """Write title, scale, view and size, and draw a bar of a round length."""
     _, height = sheet.size
     y = height - BORDER

@@ -7,10 +7,11 @@ import numpy as np
 import pytest
 
 from chainsim.model.lift import build_lift
-from chainsim.report.layout import layout_sketch, layout_svg, scale_text
+from chainsim.report.layout import layout_sketch, layout_svg
 from chainsim.report.layout_marks import round_length
 from chainsim.report.layout_notes import mount_text
 from chainsim.report.layout_parts import ball_places, shapes_of
+from chainsim.report.layout_sheet import scale_text
 from chainsim.scenario import parse_scenario
 
 SVG = "{http://www.w3.org/2000/svg}"

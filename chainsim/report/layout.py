@@ -9,7 +9,7 @@ import numpy as np
 from chainsim.model.lift import Lift
 from chainsim.report.layout_marks import arrow, dashed, measure, round_length
 from chainsim.report.layout_notes import Note, strand_notes, wheel_notes
-from chainsim.report.layout_parts import shapes_of, spots_of
+from chainsim.report.layout_parts import route_at_rest, shapes_of, spots_of
 from chainsim.report.layout_sheet import (
     BELOW,
     BORDER,
@@ -116,14 +116,14 @@ def _axles(lift: Lift, sheet: Sheet) -> str:
 
 def _travel_arrows(lift: Lift, sheet: Sheet) -> str:
     """Draw the direction of travel beside every strand."""
-    words = []
+    words, path = [], route_at_rest(lift)
     for strand in lift.strands:
         k = strand.start
-        direction = lift.route.direction[k]
+        direction = path.direction[k]
         side = np.array([-direction[1], direction[0]])
-        middle = lift.route.start[k] + 0.35 * lift.route.length[k] * direction
+        middle = path.start[k] + 0.35 * path.length[k] * direction
         offset = 2.2e-3 / sheet.scale
-        half = min(5e-3 / sheet.scale, 0.3 * float(lift.route.length[k]))
+        half = min(5e-3 / sheet.scale, 0.3 * float(path.length[k]))
         tail, tip = (middle + offset * side + s * half * direction for s in (-1.0, 1.0))
         words.append(arrow(sheet.place(tail), sheet.place(tip), TENSION_COLORS[4], 0.3))
     return "".join(words)

@@ -8,7 +8,7 @@ from typing import NamedTuple
 import numpy as np
 
 from chainsim.model.lift import Lift
-from chainsim.report.layout_parts import ball_places
+from chainsim.report.layout_parts import ball_places, route_at_rest
 from chainsim.units import format_si
 
 
@@ -43,7 +43,7 @@ def wheel_notes(lift: Lift) -> list[Note]:
     list of Note
         In the order of travel.
     """
-    notes = []
+    notes, path = [], route_at_rest(lift)
     for k, sprocket in enumerate(lift.scenario.sprocket):
         center, wheel = lift.laid.wheel_center[k], lift.wheels[k]
         size = (
@@ -51,7 +51,7 @@ def wheel_notes(lift: Lift) -> list[Note]:
             if wheel.teeth
             else f"smooth, {2e3 * sprocket.roller_radius:.1f} mm across"
         )
-        wrap = f"wrap {math.degrees(lift.route.wrap[k]):.0f}°"
+        wrap = f"wrap {math.degrees(path.wrap[k]):.0f}°"
         if sprocket.side == "outside":
             wrap += ", outside the loop"
         where = f"at {_coordinate(center[0])}, {_coordinate(center[1])} mm"
@@ -74,14 +74,14 @@ def strand_notes(lift: Lift) -> list[Note]:
     list of Note
         In the order of travel.
     """
-    notes = []
+    notes, path = [], route_at_rest(lift)
     balls = len(ball_places(lift))
     for strand in lift.strands:
-        length = float(lift.route.length[strand.start])
-        lines = [f"{1e3 * length:.1f} mm, {length / lift.route.pitch:.1f} links"]
+        length = float(path.length[strand.start])
+        lines = [f"{1e3 * length:.1f} mm, {length / path.pitch:.1f} links"]
         if strand.carrying and balls:
             lines.append(f"rises; room for {balls} balls on the way up")
-        middle = 0.5 * (lift.route.start[strand.start] + lift.route.end[strand.start])
+        middle = 0.5 * (path.start[strand.start] + path.end[strand.start])
         notes.append(Note(middle, strand.name, tuple(lines)))
     return notes
 

@@ -9,6 +9,7 @@ import numpy as np
 
 from chainsim.model.lift import Lift
 from chainsim.model.packing_balls import chute_line, trough_line
+from chainsim.model.tangents import Route, route
 from chainsim.model.tooth import outline
 
 SHOE_POINTS = 25
@@ -96,6 +97,23 @@ def spots_of(lift: Lift) -> list[Spot]:
             spots.append(Spot("roller", center, sprocket.roller_radius))
         spots.append(Spot("bore", center, 0.5 * sprocket.axle_diameter))
     return spots + [Spot("ball", place, lift.ball_radius) for place in ball_places(lift)]
+
+
+def route_at_rest(lift: Lift) -> Route:
+    """Lead the chain round the axles where they come to stand.
+
+    Parameters
+    ----------
+    lift : Lift
+        The lift, its chain laid.
+
+    Returns
+    -------
+    Route
+        Taut strands and wraps; between fixed axles surplus chain is left out.
+    """
+    moved = (w.moved(d) for w, d in zip(lift.wheels, lift.laid.travel, strict=True))
+    return route(tuple(moved), lift.route.pitch, (-lift.up[0], -lift.up[1]))
 
 
 def ball_places(lift: Lift) -> list[np.ndarray]:

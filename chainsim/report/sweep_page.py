@@ -166,11 +166,9 @@ def closed_form_line(sweep: Sweep, found: Map) -> list[tuple[float, float]]:
 
 def _threshold(sweep: Sweep, found: Map, up_label: str) -> float | None:
     """Closed-form take-up in one row of cells [unit of the horizontal axis]."""
-    fixed = dict(part.split(" = ", 1) for part in found.title.split(", ") if part)
-    fixed[found.up.name.rpartition(".")[2]] = up_label
+    fixed = {**found.fixed, found.up.name: up_label}
     for point in sweep.points:
-        short = {name.rpartition(".")[2]: label for name, label in point.labels.items()}
-        if point.refusal is None and fixed.items() <= short.items():
+        if point.refusal is None and fixed.items() <= point.labels.items():
             scenario = parse_scenario(point.text, point.scenario).with_values(point.values)
             return _estimate(scenario, found)
     return None

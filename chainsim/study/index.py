@@ -7,12 +7,10 @@ folders. It may be deleted at any time.
 from __future__ import annotations
 
 import contextlib
-import json
 import sqlite3
 from collections.abc import Iterable
 from typing import NamedTuple
 
-from chainsim.study.points import Point
 from chainsim.study.rows import DONE, Row, outcome, relative_margin, weakest
 from chainsim.study.store import Store
 
@@ -20,9 +18,6 @@ _SCHEMA = """
 CREATE TABLE IF NOT EXISTS runs (
     id TEXT PRIMARY KEY, state TEXT NOT NULL, outcome TEXT NOT NULL, weakest TEXT, margin REAL,
     code TEXT, text TEXT, tries INTEGER, seconds REAL
-);
-CREATE TABLE IF NOT EXISTS points (
-    number INTEGER PRIMARY KEY, id TEXT NOT NULL, labels TEXT NOT NULL
 );
 """
 
@@ -153,19 +148,6 @@ class Index:
             marks = ",".join("?" * len(Entry._fields))
             lines = [entry(row) for row in rows]
             self._connection.executemany(f"INSERT OR REPLACE INTO runs VALUES ({marks})", lines)
-
-    def add_points(self, points: Iterable[Point]) -> None:
-        """Note which run belongs to which point of the plan.
-
-        Parameters
-        ----------
-        points : iterable of Point
-            The points.
-        """
-        with contextlib.suppress(sqlite3.OperationalError), self._connection:
-            self._connection.execute("DELETE FROM points")
-            lines = ((p.index, p.id, json.dumps(dict(p.labels))) for p in points)
-            self._connection.executemany("INSERT INTO points VALUES (?, ?, ?)", lines)
 
     def entries(self) -> dict[str, Entry]:
         """All lines, by run id."""

@@ -13,6 +13,7 @@ from numpy.typing import NDArray
 from chainsim.study.amounts import read_amount
 from chainsim.study.axes import Axis
 from chainsim.study.points import Point
+from chainsim.study.ranking import choices_text
 from chainsim.study.rows import Row, outcome, relative_margin, weakest
 
 
@@ -47,8 +48,8 @@ class Map:
 
     Attributes
     ----------
-    title : str
-        Choices on the other axes; empty where there are none.
+    fixed : mapping of str to str
+        Choices on the other axes, by axis name.
     across, up : MapAxis
         The two axes.
     outcome : ndarray of str, shape (n_up, n_across)
@@ -59,12 +60,17 @@ class Map:
         Finding with that margin.
     """
 
-    title: str
+    fixed: Mapping[str, str]
     across: MapAxis
     up: MapAxis
     outcome: NDArray[np.str_]
     reserve: NDArray[np.float64]
     weakest: NDArray[np.str_]
+
+    @property
+    def title(self) -> str:
+        """Choices on the other axes in words; empty where there are none."""
+        return choices_text(self.fixed)
 
 
 def maps(
@@ -127,8 +133,7 @@ def _map(
             share = relative_margin(first)
             least[i, j] = share if np.isfinite(share) else np.sign(share)
             finding[i, j] = first["name"]
-    title = ", ".join(f"{name.rpartition('.')[2]} = {label}" for name, label in fixed.items())
-    return Map(title, across, up, outcomes, least, finding)
+    return Map(fixed, across, up, outcomes, least, finding)
 
 
 def _key(labels: Mapping[str, str]) -> tuple[tuple[str, str], ...]:

@@ -6,7 +6,7 @@ reserve of their weakest finding, then of the next weakest.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from chainsim.study.points import Point
@@ -96,7 +96,7 @@ def reason(ranked: Sequence[Ranked]) -> str:
     if not ranked:
         return "No run was completed, so there is nothing to rank."
     best = ranked[0]
-    name = variant_text(best)
+    name = choices_text(best.point.labels)
     if best.outcome == "fails":
         return f"Every variant fails; {name} fails by the least, in {_words(best.weakest)}."
     if not best.weakest:
@@ -108,29 +108,28 @@ def reason(ranked: Sequence[Ranked]) -> str:
     if len(ranked) == 1:
         return own + "."
     second = ranked[1]
+    other = choices_text(second.point.labels)
     if second.outcome != best.outcome:
-        return f"{own}; the next one, {variant_text(second)}, {_third(second.outcome)}."
-    return (
-        f"{own}; the next one, {variant_text(second)}, keeps {second.reserve:.0%} "
-        f"in {_words(second.weakest)}."
-    )
+        return f"{own}; the next one, {other}, {_third(second.outcome)}."
+    return f"{own}; the next one, {other}, keeps {second.reserve:.0%} in {_words(second.weakest)}."
 
 
-def variant_text(ranked: Ranked) -> str:
-    """A variant by its choices.
+def choices_text(labels: Mapping[str, str]) -> str:
+    """Choices on axes in words.
 
     Parameters
     ----------
-    ranked : Ranked
-        The variant.
+    labels : mapping of str to str
+        Choices by axis name.
 
     Returns
     -------
     str
-        Such as ``drive = tail, chain_speed = 0.3 m/s``.
+        Such as ``drive = tail, chain speed = 0.3 m/s``.
     """
-    labels = ranked.point.labels.items()
-    return ", ".join(f"{name.rpartition('.')[2]} = {label}" for name, label in labels)
+    return ", ".join(
+        f"{name.rpartition('.')[2].replace('_', ' ')} = {label}" for name, label in labels.items()
+    )
 
 
 def _words(finding: str) -> str:

@@ -127,7 +127,6 @@ def run_points(
         try:
             store.remove_unfinished({point.id for point in points})
             index.catch_up()
-            index.add_points(points)
             jobs = _jobs(points, store, index, settings)
             sweep = _Sweep(index, store, settings, request, watcher)
             unique = {point.id for point in points}

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import csv
 import io
 import json
 import re
@@ -32,6 +33,7 @@ from chainsim.study.as_data import (
 )
 from chainsim.study.bench import Bench
 from chainsim.study.engines import SerialEngine
+from chainsim.study.export import export_csv, summary_unit
 from chainsim.study.limit_estimates import estimate
 from chainsim.study.limit_questions import question
 from chainsim.study.limits import find_limit
@@ -229,3 +231,15 @@ def test_the_page_of_an_ensemble_tells_rates_and_influences(tmp_path):
 def test_short_names_tell_axes_apart():
     names = ["sprocket.head.teeth", "sprocket.tail.teeth", "drive.chain_speed"]
     assert short_names(names) == ["head teeth", "tail teeth", "chain speed"]
+
+
+def test_a_sweep_leaves_as_a_table_with_units(sweep, tmp_path):
+    path = export_csv(sweep, tmp_path / "sweep.csv")
+    lines = list(csv.DictReader(path.open(encoding="utf-8")))
+    assert len(lines) == 36
+    first = lines[0]
+    assert first["drive"] == "head" and first["sprocket.tail.mount.mass"] == "0.1 kg"
+    assert first["balls_stay_seated outcome"] == "holds"
+    assert float(first["balls_stay_seated margin [N]"]) == pytest.approx(0.5)
+    assert float(first["balls_ended [1]"]) == 50
+    assert summary_unit("axle_load.tail") == "N" and summary_unit("ripple.2") == "1"

@@ -9,13 +9,13 @@ trough.
 
 from __future__ import annotations
 
-from itertools import pairwise
 from typing import Any, NamedTuple
 
 import numpy as np
 
 from chainsim.analysis.carried import carried_balls
 from chainsim.analysis.chain_motion import excursion
+from chainsim.analysis.distances import from_line, from_links, of_outlines, outline_points
 from chainsim.analysis.survey import Survey, survey
 
 N_SPREAD = 100
@@ -24,15 +24,9 @@ N_SPREAD = 100
 FINE_STEP, FINE_SPAN = 0.125, 12.0
 """Travel between further moments, and of all of them, in the middle of steady running [pitches]."""
 
-TINY = 1e-30
-"""Square of a length without meaning [m2]."""
-
 N_MOMENTS = 12
 """Moments at which strands are held against each other, evenly spread; and as many in which they
 swing inward most [dimensionless]."""
-
-FAR = 1e9
-"""Stands for "no such part" [m]."""
 
 
 class Gap(NamedTuple):
@@ -89,65 +83,6 @@ def _moments(s: Survey) -> np.ndarray:
     return np.union1d(even, fine)
 
 
-def outline_points(rec: Any, samples: np.ndarray) -> np.ndarray | None:
-    """Corners of all pockets in the frame.
-
-    Parameters
-    ----------
-    rec : Recording or Survey
-        The recording.
-    samples : ndarray of int, shape (n,)
-        Samples to look at [dimensionless].
-
-    Returns
-    -------
-    ndarray, shape (n, n_carriers, n_points, 2), or None
-        Their places [m], NaN where a pocket has fewer; None where the chain is bare.
-    """
-    s = survey(rec)
-    outline, link = s.channel("geometry/pocket_outline"), s.channel("geometry/carrier_link")
-    if outline is None or link is None or not len(link):
-        return None
-    start = s.position[samples[:, None], link]
-    along = s.position[samples[:, None], (link + 1) % s.n_pins] - start
-    length = np.hypot(along[..., 0], along[..., 1])
-    along = along / np.where(length > 0.0, length, np.nan)[..., None]
-    normal = np.stack((along[..., 1], -along[..., 0]), axis=-1)
-    return (
-        start[:, :, None]
-        + outline[None, ..., 0:1] * along[:, :, None]
-        + outline[None, ..., 1:2] * normal[:, :, None]
-    )
-
-
-def _distance_to_line(points: np.ndarray, line: np.ndarray) -> np.ndarray:
-    """Distance of points (..., 2) from a polyline (n, 2) [m], shape (...)."""
-    best = np.full(points.shape[:-1], FAR)
-    for a, b in pairwise(line):
-        along = b - a
-        share = np.clip(((points - a) @ along) / max(float(along @ along), TINY), 0.0, 1.0)
-        away = points - a - share[..., None] * along
-        best = np.fmin(best, np.hypot(away[..., 0], away[..., 1]))
-    return best
-
-
-def _distance_of_outlines(corners: np.ndarray, line: np.ndarray) -> np.ndarray:
-    """Distance of polylines (..., k, 2) from a fixed one (n, 2) [m], shape (..., k).
-
-    Corners of each against the sides of the other; two sides that cross far from any corner
-    are seen only when a corner comes near.
-    """
-    best = _distance_to_line(corners, line)
-    start, along = corners[..., :-1, :], np.diff(corners, axis=-2)
-    square = np.maximum((along**2).sum(axis=-1), TINY)
-    for point in line:
-        share = np.clip(((point - start) * along).sum(axis=-1) / square, 0.0, 1.0)
-        away = point - start - share[..., None] * along
-        best[..., :-1] = np.fmin(best[..., :-1], np.hypot(away[..., 0], away[..., 1]))
-    best[np.isnan(corners[..., 0])] = np.nan
-    return best
-
-
 def _smallest(s: Survey, samples: np.ndarray, gap: np.ndarray, parts: str) -> list[Gap]:
     """Smallest of gaps (n_samples, ...) with its moment; none where all are unknown."""
     flat = gap.reshape(len(samples), -1)
@@ -169,9 +104,9 @@ def _to_walls(s: Survey, samples: np.ndarray) -> list[Gap]:
     corners, pins = outline_points(s, samples), s.position[samples].astype(float)
     gaps: list[Gap] = []
     for name, line in standing.items():
-        gaps += _smallest(s, samples, _distance_to_line(pins, line) - roller, f"chain and {name}")
+        gaps += _smallest(s, samples, from_line(pins, line) - roller, f"chain and {name}")
         if corners is not None:
-            gap = _distance_of_outlines(corners, line) - wall
+            gap = of_outlines(corners, line) - wall
             gaps += _smallest(s, samples, gap, f"carriers and {name}")
     return gaps
 
@@ -199,7 +134,7 @@ def _between_strands(s: Survey, samples: np.ndarray) -> list[Gap]:
     for k, (name, first) in enumerate(strands):
         for other, second in strands[k + 1 :]:
             a, b = position[rows, first], position[rows, second]
-            gap = _pin_to_links(a, b) - s.scenario.chain.roller_diameter
+            gap = from_links(a, b) - s.scenario.chain.roller_diameter
             gaps += _smallest(s, samples, gap, f"strand {name} and strand {other}")
     return gaps
 
@@ -210,16 +145,6 @@ def _leaning_most(s: Survey, samples: np.ndarray) -> np.ndarray:
     even = samples[:: max(1, len(samples) // N_MOMENTS)]
     deepest = np.argpartition(-inward, min(N_MOMENTS, len(inward) - 1))[:N_MOMENTS]
     return np.union1d(even, deepest)
-
-
-def _pin_to_links(pins: np.ndarray, chain: np.ndarray) -> np.ndarray:
-    """Distance of pins (n, a, 2) from the links between pins (n, b, 2) [m], shape (n, a)."""
-    start, along = chain[:, None, :-1], (chain[:, 1:] - chain[:, :-1])[:, None]
-    away = pins[:, :, None] - start
-    square = np.maximum((along**2).sum(axis=-1), TINY)
-    share = np.clip((away * along).sum(axis=-1) / square, 0.0, 1.0)
-    left = away - share[..., None] * along
-    return np.sqrt((left**2).sum(axis=-1).min(axis=2))
 
 
 def _to_outside(s: Survey, samples: np.ndarray) -> list[Gap]:

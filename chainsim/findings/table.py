@@ -14,8 +14,9 @@ from chainsim.findings.chain import (
     links_hold,
     no_tooth_skipped,
 )
-from chainsim.findings.drive import drive_copes, off_resonance, shaft_below_whirl
+from chainsim.findings.drive import drive_copes, shaft_below_whirl
 from chainsim.findings.finding import NOT_ENOUGH_DATA, Finding, unjudged
+from chainsim.findings.resonance import off_resonance
 from chainsim.findings.space import parts_keep_clear, strand_in_clearance, takeup_in_travel
 from chainsim.findings.validity import within_range
 

@@ -39,8 +39,9 @@ from chainsim.recording.tail import remove_tail, write_tail
 
 FLUSH_EVERY = 1.0
 """Wall time [s] between flushes: what a kill can cost at most, besides the block in work."""
-LIBRARY_VERSIONS = ("earliest", "v110")
-"""Range of HDF5 file formats: readable for old programs, and after a kill (no lock flag inside)."""
+LIBRARY_VERSIONS = ("v108", "v110")
+"""Range of HDF5 file formats. From 1.8 on, headers have checksums, so that damage is noticed (older
+ones made the library crash on damaged files); from 1.10 on, a killed writer's file stays locked."""
 
 
 class FileRecorder(Recorder):

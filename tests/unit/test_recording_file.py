@@ -311,6 +311,7 @@ def test_a_cut_off_copy_is_said(copy, part):
 
 
 def test_random_damage_never_ends_in_another_error(copy):
+    """Also not in a crash of the library: headers have checksums (see `LIBRARY_VERSIONS`)."""
     content, rng = bytearray(copy.read_bytes()), np.random.default_rng(5)
     for _ in range(60):
         hurt = content.copy()

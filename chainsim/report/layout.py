@@ -53,7 +53,7 @@ def layout_svg(lift: Lift) -> str:
     Returns
     -------
     str
-        An SVG in millimeters: the lift at rest as laid, measures on the left, notes on the
+        An SVG in millimeters: the lift as its chain is laid out, measures on the left, notes on the
         right, scale and view below.
     """
     low, high = extent(lift)
@@ -200,7 +200,7 @@ def _title_and_foot(lift: Lift, sheet: Sheet) -> str:
     span = 1e3 * (sheet.high - sheet.low)
     view = "the back" if sheet.mirrored else "the front"
     text = (
-        f"scale {scale_text(sheet.scale)}, seen from {view}, at rest; measures in mm; "
+        f"scale {scale_text(sheet.scale)}, seen from {view}, as laid out; measures in mm; "
         f"{lift.n_links} links of {1e3 * lift.route.pitch:.2f} mm; "
         f"{span[0]:.0f} wide, {span[1]:.0f} tall in all"
     )

@@ -13,6 +13,10 @@ from chainsim.model.tangents import Route, route
 from chainsim.model.tooth import outline
 
 SHOE_POINTS = 25
+"""Points on the arc of a shoe (dimensionless)."""
+
+PIVOT_RADIUS = 2e-3
+"""Size at which the pivot of an arm is drawn [m]."""
 
 
 class Shape(NamedTuple):
@@ -96,6 +100,8 @@ def spots_of(lift: Lift) -> list[Spot]:
         if lift.teeth[k] is None:
             spots.append(Spot("roller", center, sprocket.roller_radius))
         spots.append(Spot("bore", center, 0.5 * sprocket.axle_diameter))
+        if sprocket.mount.kind == "arm":
+            spots.append(Spot("bore", np.array(sprocket.mount.pivot), PIVOT_RADIUS))
     return spots + [Spot("ball", place, lift.ball_radius) for place in ball_places(lift)]
 
 

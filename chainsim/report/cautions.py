@@ -42,9 +42,9 @@ def cautions(rec: Any) -> list[Caution]:
 
 
 def fall_height(s: Survey) -> float:
-    """Return the height from the lowest to the highest pin at the start [m]."""
-    y = s.position[0, :, 1]
-    return float(y.max() - y.min())
+    """Return the height from the foot of the lowest to the top of the highest wrap [m]."""
+    y = s.center[0, :, 1]
+    return float((y + s.seat_radius).max() - (y - s.seat_radius).min())
 
 
 def falling_ball(s: Survey) -> Caution | None:

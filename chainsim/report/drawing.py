@@ -13,6 +13,7 @@ from matplotlib.patches import Circle, Polygon
 
 from chainsim.report.parts import (
     carrier_parts,
+    highest_tension,
     n_slots,
     scalar,
     sprocket_parts,
@@ -98,7 +99,7 @@ def drawing_parts(rec: Any) -> Parts:
         carriers,
         pockets,
         view_box(rec, sprockets, standing),
-        tension_edges(rec["links/tension"]),
+        tension_edges(highest_tension(rec)[0]),
         scalar(rec, "geometry/ball_radius"),
     )
 
@@ -210,15 +211,14 @@ def draw_lift(axes: Axes, rec: Any, sample: int, parts: Parts | None = None) -> 
 
 def lift_figure(rec: Any) -> Figure:
     """Draw the lift at the moment of the highest tension of any link."""
-    tension = rec["links/tension"]
-    sample = int(np.nanargmax(np.nanmax(tension, axis=1)))
+    _, sample = highest_tension(rec)
     parts = drawing_parts(rec)
     left, bottom, right, top = parts.box
     height = 7.0
     width = min(max(height * (right - left) / (top - bottom) + 2.6, 4.2), 7.4)
     figure, (axes,) = new_figure(width=width, height=height)
     draw_lift(axes, rec, sample, parts)
-    keys = tension_key(parts.edges, bool((tension < 0.0).any()))
+    keys = tension_key(parts.edges, bool((at(rec, "links/tension", sample) < 0.0).any()))
     figure.legend(handles=keys, loc="outside right upper", title="link tension", fontsize=8)
     axes.set_title(f"at {rec.time[sample]:.3f} s")
     return figure

@@ -13,6 +13,7 @@ from jinja2 import Environment, PackageLoader
 from markupsafe import Markup
 
 from chainsim import __version__
+from chainsim.errors import RecordingError
 from chainsim.findings import situations, verdict
 from chainsim.report.cautions import cautions
 from chainsim.report.findings_view import grouped
@@ -20,11 +21,11 @@ from chainsim.report.images import page_image
 from chainsim.report.keys import jump_lists, mark_key, tension_key, time_marks
 from chainsim.report.marks import outcome_bar
 from chainsim.report.moments import marks
-from chainsim.report.plots import PLOTS
+from chainsim.report.plots import PLOTS, drawn
 from chainsim.report.provenance import provenance_rows
 from chainsim.report.scene import build_scene
 from chainsim.report.sizing import delivered_text, sizing_rows
-from chainsim.report.style import OUTCOME_COLORS, plot_style
+from chainsim.report.style import OUTCOME_COLORS
 from chainsim.report.text import BLIND_SPOTS, DEFERS, findings_of, overall_outcome, readable
 from chainsim.report.values import origin_counts, value_blocks
 
@@ -51,6 +52,12 @@ CONTENTS = (
     ("cautions", "Cautions"),
 )
 
+MOTION_CHANNELS = ("pins/position", "pins/velocity", "links/tension", "sprockets/angle")
+"""What a recording must hold to be played."""
+
+LEAST_SAMPLES = 3
+"""Fewest samples that can be shown [dimensionless]."""
+
 PLAYER_FILES = ("player_frames.js", "player_drawing.js", "player_controls.js")
 
 
@@ -76,13 +83,17 @@ def render_report(rec: Any, path: str | Path) -> Path:
 
 def report_html(rec: Any) -> str:
     """Return the report page of a run as text."""
+    if len(rec.time) < LEAST_SAMPLES:
+        name = rec.path or "recording"
+        raise RecordingError(f"{name}: {len(rec.time)} samples are too few to show")
     findings = findings_of(rec)
-    found = marks(rec, findings)
-    scene, frames = build_scene(rec, findings)
+    has_motion = all(name in rec for name in MOTION_CHANNELS)
+    found = marks(rec, findings) if has_motion else []
+    scene, frames = build_scene(rec, findings) if has_motion else (None, "")
     reserve = rec.scenario.limits.reserve
     return render_page(
         "report.html.j2",
-        script=player_script(),
+        script=player_script() if has_motion else "",
         title=rec.scenario.title or rec.scenario.stem,
         view=rec.scenario.view,
         created=rec.attrs.get("created", "at an unknown date"),
@@ -97,10 +108,10 @@ def report_html(rec: Any) -> str:
         reserve=f"{100 * reserve:.0f} %",
         bars=[(outcome, outcome_bar(outcome)) for outcome in OUTCOME_COLORS],
         groups=grouped(findings, reserve, found),
-        frame_rate=round(scene["rate"]),
-        tension_key=tension_key(scene["tension"]["top"]),
+        frame_rate=round(scene["rate"]) if scene else 0,
+        tension_key=tension_key(scene["tension"]["top"]) if scene else "",
         speeds=SPEEDS + FAST_SPEEDS,
-        sprockets=[part["name"] for part in scene["sprockets"]],
+        sprockets=[sprocket.name for sprocket in rec.scenario.sprocket],
         length_ms=round(1000 * (rec.time[-1] - rec.time[0])),
         time_marks=time_marks(found, float(rec.time[0]), float(rec.time[-1])),
         mark_key=mark_key(),
@@ -180,8 +191,7 @@ def plot_parts(rec: Any) -> list[dict]:
     """Return the plots of the page, section by section."""
     images: dict[str, list[dict]] = {section: [] for section, _ in PLOT_SECTIONS}
     for plot in PLOTS:
-        with plot_style():
-            figure = plot.draw(rec)
+        figure = drawn(plot, rec)
         if figure is not None:
             images[plot.section].append(page_image(figure, plot.title, plot.text))
     return [{"id": i, "title": title, "plots": images[i]} for i, title in PLOT_SECTIONS]

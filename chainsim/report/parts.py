@@ -11,6 +11,45 @@ OUTLINE_POINTS = 160
 """Most points of one tooth outline on the page [dimensionless]."""
 
 
+WINDOW = 4096
+"""Samples read at once [dimensionless], so that a long recording needs little memory."""
+
+
+def sampled(rec: Any, name: str, samples: np.ndarray) -> np.ndarray:
+    """Read a channel at some samples, without holding all of it.
+
+    Parameters
+    ----------
+    rec : Recording
+        The run.
+    name : str
+        Path of the channel.
+    samples : ndarray of int, shape (n,)
+        Rising sample numbers [dimensionless].
+
+    Returns
+    -------
+    ndarray, shape (n, ...)
+        Values in the unit of the channel.
+    """
+    pieces = []
+    for start in range(0, len(rec.time), WINDOW):
+        own = samples[(samples >= start) & (samples < start + WINDOW)]
+        if len(own):
+            pieces.append(rec.read(name, slice(start, start + WINDOW))[own - start])
+    return np.concatenate(pieces)
+
+
+def highest_tension(rec: Any) -> tuple[float, int]:
+    """Return the highest tension of any link [N], and the sample in which it was recorded."""
+    found = (-math.inf, 0)
+    for start in range(0, len(rec.time), WINDOW):
+        highest = np.nanmax(rec.read("links/tension", slice(start, start + WINDOW)), axis=1)
+        sample = int(np.argmax(highest))
+        found = max(found, (float(highest[sample]), start + sample))
+    return found
+
+
 def standing_parts(rec: Any) -> list[dict]:
     """Return what stands still: walls, guides, chute and trough, as named polylines [m]."""
     parts = []
@@ -35,7 +74,7 @@ def sprocket_parts(rec: Any) -> list[dict]:
     """Return name, outline, radius [m] and kind of mount of every sprocket."""
     outlines = rec["geometry/tooth_outline"]
     radii = rec["geometry/seat_radius"]
-    centers = rec["sprockets/center"][0]
+    centers = rec.read("sprockets/center", slice(0, 1))[0]
     parts = []
     for index, sprocket in enumerate(rec.scenario.sprocket):
         outline = _finite_points(outlines[index])
@@ -74,7 +113,7 @@ def carrier_parts(rec: Any) -> tuple[list[dict], list[list]]:
 
 def view_box(rec: Any, parts: list[dict], standing: list[dict]) -> tuple[float, ...]:
     """Return left, bottom, right and top of what the whole view must show [m]."""
-    pins = rec["pins/position"][:: max(1, len(rec.time) // 200)]
+    pins = sampled(rec, "pins/position", np.arange(0, len(rec.time), max(1, len(rec.time) // 200)))
     corners = [np.nanmin(pins, axis=(0, 1)), np.nanmax(pins, axis=(0, 1))]
     for part in parts:
         reach = 1.3 * part["radius"]

@@ -8,6 +8,7 @@ from typing import Any, NamedTuple
 
 from matplotlib.figure import Figure
 
+from chainsim.errors import RecordingError
 from chainsim.report import series
 from chainsim.report.drawing import lift_figure
 from chainsim.report.figures import (
@@ -159,6 +160,15 @@ PLOTS: tuple[Plot, ...] = (
 )
 
 
+def drawn(plot: Plot, rec: Any) -> Figure | None:
+    """Return a plot of a run, None where the run did not record what it shows."""
+    try:
+        with plot_style():
+            return plot.draw(rec)
+    except RecordingError:
+        return None
+
+
 def write_plots(rec: Any, directory: str | Path) -> list[Path]:
     """Write every plot of a run as SVG and PNG.
 
@@ -178,10 +188,10 @@ def write_plots(rec: Any, directory: str | Path) -> list[Path]:
     directory.mkdir(parents=True, exist_ok=True)
     written = []
     for plot in PLOTS:
+        figure = drawn(plot, rec)
+        if figure is None:
+            continue
         with plot_style():
-            figure = plot.draw(rec)
-            if figure is None:
-                continue
             for suffix in ("svg", "png"):
                 path = directory / f"{plot.name}.{suffix}"
                 figure.savefig(path, dpi=PNG_DOTS, metadata=clean_metadata(suffix))

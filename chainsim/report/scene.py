@@ -9,7 +9,9 @@ import numpy as np
 from chainsim.report.moments import is_lost, loss_time, marks
 from chainsim.report.parts import (
     carrier_parts,
+    highest_tension,
     n_slots,
+    sampled,
     scalar,
     sprocket_parts,
     standing_parts,
@@ -30,8 +32,8 @@ from chainsim.report.style import TENSION_COLORS, TENSION_WIDTHS, tension_edges
 
 def _readouts(rec: Any, samples: np.ndarray) -> tuple[list[dict], np.ndarray]:
     """Return what stands beside the motion: captions, and values of shape (frames, k)."""
-    speed = np.linalg.norm(rec["pins/velocity"][samples], axis=-1).mean(axis=-1)
-    columns = [speed, np.nanmax(rec["links/tension"][samples], axis=-1)]
+    speed = np.linalg.norm(sampled(rec, "pins/velocity", samples), axis=-1).mean(axis=-1)
+    columns = [speed, np.nanmax(sampled(rec, "links/tension", samples), axis=-1)]
     captions = [
         {"label": "Mean chain speed", "unit": "m/s", "factor": 1.0, "digits": 3},
         {"label": "Highest link tension", "unit": "N", "factor": 1.0, "digits": 2},
@@ -39,7 +41,7 @@ def _readouts(rec: Any, samples: np.ndarray) -> tuple[list[dict], np.ndarray]:
     for index, sprocket in enumerate(rec.scenario.sprocket):
         if sprocket.mount.kind in ("fixed", "screwed") or "mounts/travel" not in rec:
             continue
-        columns.append(rec["mounts/travel"][samples, index])
+        columns.append(sampled(rec, "mounts/travel", samples)[:, index])
         label = f"Take-up travel, {sprocket.name}"
         captions.append({"label": label, "unit": "mm", "factor": 1e3, "digits": 2})
     return captions, np.nan_to_num(np.stack(columns, axis=1).astype(float))
@@ -47,32 +49,51 @@ def _readouts(rec: Any, samples: np.ndarray) -> tuple[list[dict], np.ndarray]:
 
 def _motion_channels(rec: Any, samples: np.ndarray, box: tuple[float, ...]) -> list[Channel]:
     """Pack everything that moves at the chosen samples."""
-    frames = len(samples)
     margin = 0.5 * max(box[2] - box[0], box[3] - box[1])
     low = np.array([box[0] - margin, box[1] - margin])
     high = np.array([box[2] + margin, box[3] + margin])
-    tension = rec["links/tension"][samples]
+    tension = sampled(rec, "links/tension", samples)
     ends = np.array([[min(float(np.nanmin(tension)), -1e-3)], [float(np.nanmax(tension)) + 1e-3]])
     channels = [
-        packed_range("pins", rec["pins/position"][samples].reshape(frames, -1), low, high),
+        packed_range("pins", flat(rec, "pins/position", samples), low, high),
         packed_range("tension", tension, *ends),
-        packed_range("centers", rec["sprockets/center"][samples].reshape(frames, -1), low, high),
-        packed_angle("angles", rec["sprockets/angle"][samples]),
+        packed_range("centers", flat(rec, "sprockets/center", samples), low, high),
+        packed_angle("angles", sampled(rec, "sprockets/angle", samples)),
     ]
     _, values = _readouts(rec, samples)
     channels.append(packed_range("readouts", values, values.min(axis=0), values.max(axis=0)))
     if "mounts/weight" in rec:
-        drop = np.nan_to_num(rec["mounts/weight"][samples])
+        drop = np.nan_to_num(sampled(rec, "mounts/weight", samples))
         channels.append(packed_range("weights", drop, drop.min(axis=0), drop.max(axis=0)))
     if n_slots(rec):
-        position = rec["balls/position"][samples].reshape(frames, -1)
+        position = flat(rec, "balls/position", samples)
         channels += [
             packed_range("balls", position, low, high),
-            packed_angle("ball_angle", rec["balls/angle"][samples]),
-            packed_counts("ball_number", rec["balls/number"][samples]),
-            packed_counts("ball_state", rec["balls/state"][samples]),
+            packed_angle("ball_angle", sampled(rec, "balls/angle", samples)),
+            packed_counts("ball_number", sampled(rec, "balls/number", samples)),
+            packed_counts("ball_state", sampled(rec, "balls/state", samples)),
         ]
     return channels
+
+
+def flat(rec: Any, name: str, samples: np.ndarray) -> np.ndarray:
+    """Return a channel at some samples, a row each.
+
+    Parameters
+    ----------
+    rec : Recording
+        The run.
+    name : str
+        Path of the channel.
+    samples : ndarray of int, shape (frames,)
+        Sample numbers [dimensionless].
+
+    Returns
+    -------
+    ndarray, shape (frames, series)
+        In the unit of the channel.
+    """
+    return sampled(rec, name, samples).reshape(len(samples), -1)
 
 
 def build_scene(rec: Any, findings: list) -> tuple[dict, str]:
@@ -110,7 +131,7 @@ def build_scene(rec: Any, findings: list) -> tuple[dict, str]:
         "time": np.round(rec.time[samples].astype(float), 6).tolist(),
         "rate": rate,
         "channels": [channel.described() for channel in channels],
-        "pins": int(rec["pins/position"].shape[1]),
+        "pins": int(rec.read("pins/position", slice(0, 1)).shape[1]),
         "slots": n_slots(rec),
         "pitch": float(rec.scenario.chain.pitch),
         "roller": scalar(rec, "geometry/roller_radius"),
@@ -121,7 +142,7 @@ def build_scene(rec: Any, findings: list) -> tuple[dict, str]:
         "standing": standing,
         "lost": {str(b.number): loss_time(rec, b) for b in rec.balls if is_lost(b.fate)},
         "tension": {
-            "top": float(tension_edges(rec["links/tension"])[-1]),
+            "top": float(tension_edges(highest_tension(rec)[0])[-1]),
             "colors": TENSION_COLORS,
             "widths": TENSION_WIDTHS,
         },

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable
+from contextlib import suppress
 from typing import Any, NamedTuple
 
 import numpy as np
@@ -17,7 +18,7 @@ from chainsim.analysis.ride import carried_balls
 from chainsim.analysis.sizing import Row, sizing_sheet
 from chainsim.analysis.survey import Survey, survey
 from chainsim.analysis.tensions import strand_ends
-from chainsim.errors import ChainsimError
+from chainsim.errors import ChainsimError, RecordingError
 from chainsim.model.tangents import route
 from chainsim.model.wheels import chain_pitch, down_of, wheels_of
 from chainsim.report.text import findings_of, quantity
@@ -62,7 +63,7 @@ def sizing_rows(rec: Any) -> list[SizingRow]:
     s = survey(rec)
     try:
         path = route(wheels_of(s.scenario), chain_pitch(s.scenario), down_of(s.scenario))
-        sheet = sizing_sheet(s.scenario, path, s.n_pins)
+        sheet = sizing_sheet(s.scenario, path, len(s["geometry/pitch"]))
     except ChainsimError:
         return []
     beside = simulated_values(s)
@@ -99,25 +100,40 @@ def simulated_values(s: Survey) -> dict[str, float]:
     Returns
     -------
     dict of str to float
-        Values [SI]; NaN where nothing ran steadily.
+        Values [SI]; NaN where nothing ran steadily, missing where it was not recorded.
     """
+    values: dict[str, float] = {}
+    for part in (drive_values, peak_values, speed_values, strand_values, mode_values):
+        with suppress(RecordingError):
+            values |= part(s)
+    return values
+
+
+def drive_values(s: Survey) -> dict[str, float]:
+    """Return what the drive did in steady running, and the balls aboard."""
     driven = s.sprocket_names.index(s.scenario.drive.sprocket)
-    found = ripple(s)
-    values = {
+    return {
         "tooth rate": s.tooth_rate,
-        f"speed variation from {s.sprocket_names[driven]}": (
-            found.peak_to_peak if found else math.nan
-        ),
         "speed of the driven sprocket": mean_of(s, "sprockets/rate", lambda v: v[:, driven]),
         "mean torque on the driven sprocket": abs(mean_of(s, "drive/torque")),
         "current": mean_of(s, "drive/current"),
         "balls on the carrying strand": balls_aboard(s),
     }
-    peak = s.rec.extremes.get("link_tension")
-    if peak is not None:
-        share = peak.value / s.scenario.chain.allowable_tension
-        values["greatest tension over the allowable"] = share
-    return values | strand_values(s) | mode_values(s)
+
+
+def peak_values(s: Survey) -> dict[str, float]:
+    """Return the peak tension as a share of what a link may carry [dimensionless]."""
+    peak = s.extremes.get("link_tension")
+    if peak is None:
+        return {}
+    return {"greatest tension over the allowable": peak.value / s.scenario.chain.allowable_tension}
+
+
+def speed_values(s: Survey) -> dict[str, float]:
+    """Return the ripple of the chain speed [dimensionless]."""
+    found = ripple(s)
+    name = f"speed variation from {s.scenario.drive.sprocket}"
+    return {name: found.peak_to_peak} if found else {}
 
 
 def strand_values(s: Survey) -> dict[str, float]:

@@ -111,23 +111,21 @@ def new_figure(
     return figure, tuple(axes[:, 0])
 
 
-def tension_edges(tension: np.ndarray) -> np.ndarray:
+def tension_edges(highest: float) -> np.ndarray:
     """Return the limits between the tension classes of a run.
 
     Parameters
     ----------
-    tension : ndarray
-        Tensions of all links and samples [N], any shape.
+    highest : float
+        Highest tension of any link in it [N].
 
     Returns
     -------
     ndarray, shape (n_classes + 1,)
         Rising from 0 in round steps to the largest tension or more [N].
     """
-    finite = tension[np.isfinite(tension)]
-    top = float(finite.max()) if finite.size else 1.0
     n_classes = len(TENSION_COLORS)
-    return round_up(max(top, 1e-3) / n_classes) * np.arange(n_classes + 1)
+    return round_up(max(highest, 1e-3) / n_classes) * np.arange(n_classes + 1)
 
 
 def round_up(value: float) -> float:

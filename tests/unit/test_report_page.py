@@ -10,11 +10,12 @@ from html.parser import HTMLParser
 
 import pytest
 
-from chainsim.errors import CallError
+from chainsim.errors import CallError, RecordingError
 from chainsim.findings import judge
 from chainsim.report import compare, comparison_table, render_report
 from chainsim.report.cautions import cautions
 from chainsim.report.page import CONTENTS, report_html
+from chainsim.report.plots import PLOTS
 from chainsim.report.sizing import sizing_rows
 from chainsim.report.values import value_blocks
 from tests.synthetic import BALL_MASS, GRAVITY, PITCH, SEAT_RADIUS, synthetic_recording
@@ -176,3 +177,44 @@ def test_scene_is_valid_json_without_nan(page):
     text = re.search(r'<script type="application/json" id="scene">(.*?)</script>', page, re.S)[1]
     scene = json.loads(text, parse_constant=lambda name: pytest.fail(f"{name} is no JSON"))
     assert all(math.isfinite(t) for t in scene["time"])
+
+
+class Partly:
+    """A recording of which some channels were not kept, with the findings of the whole."""
+
+    def __init__(self, whole, hidden):
+        self._whole, self._hidden = whole, hidden
+        self.findings = judge(whole)
+
+    def __getattr__(self, name):
+        return getattr(self._whole, name)
+
+    def __contains__(self, name):
+        return not name.startswith(self._hidden) and name in self._whole
+
+    def __getitem__(self, name):
+        return self.read(name)
+
+    def read(self, name, window=slice(None)):
+        if name not in self:
+            raise RecordingError(f"holds no '{name}'")
+        return self._whole.read(name, window)
+
+    def names(self):
+        return [name for name in self._whole.names() if name in self]
+
+
+@pytest.mark.parametrize(
+    "hidden", [("pins/", "links/", "balls/"), ("drive/", "mounts/", "strands/", "energy/")]
+)
+def test_a_recording_that_holds_less_gets_a_page_all_the_same(recording, hidden, monkeypatch):
+    few = [p for p in PLOTS if p.name in ("lift", "strand-tension", "drive", "takeup-travel")]
+    monkeypatch.setattr("chainsim.report.page.PLOTS", few)
+    html = report_html(Partly(recording, hidden))
+    assert ('id="player"' in html) == (hidden[0] != "pins/")
+    assert "Cautions" in html
+
+
+def test_too_few_samples_are_refused_by_name():
+    with pytest.raises(RecordingError, match="2 samples"):
+        report_html(synthetic_recording(duration=0.004))

@@ -65,7 +65,7 @@ def test_outcomes_are_readable_on_white(outcome):
 
 
 def test_tension_classes():
-    edges = tension_edges(np.array([0.2, 13.9, np.nan, -1.0]))
+    edges = tension_edges(13.9)
     assert edges[0] == 0.0
     assert edges[-1] >= 13.9
     assert tension_class(np.array([-0.1, 0.0, 13.9]), edges).tolist() == [-1, 0, 6]

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 from chainsim.errors import CallError
@@ -124,17 +124,55 @@ def question(scenario: Any, name: str, low: str | None = None, high: str | None 
         If the question does not apply to this lift, or the range is no range.
     """
     asked = _BY_NAME.get(name, lambda lift: _any_key(lift, name))(scenario)
-    ends = {}
-    for end, text in (("low", low), ("high", high)):
-        if text is not None:
-            try:
-                ends[end] = to_si(text, asked.unit_kind)
-            except ValueError as error:
-                raise CallError(f"limit {name}: {end} end of the range: {error}") from None
-    asked = Question(**{**asked.__dict__, **ends})
+    asked = replace(
+        asked,
+        low=asked.low if low is None else _end(name, low, asked.unit_kind),
+        high=asked.high if high is None else _end(name, high, asked.unit_kind),
+    )
     if not asked.low < asked.high or (asked.log and asked.low <= 0):
         raise CallError(f"limit {name}: the range must rise, and start above zero")
     return asked
+
+
+def _end(name: str, text: str, unit_kind: str) -> float:
+    try:
+        return to_si(text, unit_kind)
+    except ValueError as error:
+        raise CallError(f"limit {name}: the range: {error}") from None
+
+
+def questions(
+    scenario: Any, name: str, low: str | None = None, high: str | None = None
+) -> list[Question]:
+    """Questions that answer a name: one, or for a key one each way.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        The scenario from which the search starts.
+    name : str
+        `takeup`, `speed`, `height`, `wear`, `slack`, or any dotted key of a number.
+    low, high : str or None
+        Ends of the range to scan, with their unit; None takes a range that suits.
+
+    Returns
+    -------
+    list of Question
+        Of a key nobody knows which way is harder, so it is asked upward and downward; both
+        scans are the same runs.
+
+    Raises
+    ------
+    CallError
+        If the question does not apply to this lift, or the range is no range.
+    """
+    asked = question(scenario, name, low, high)
+    if name in _BY_NAME:
+        return [asked]
+    return [
+        replace(asked, title=f"{name}, upward", harder=+1),
+        replace(asked, title=f"{name}, downward", harder=-1),
+    ]
 
 
 def takeup_sprocket(scenario: Any) -> Any:

@@ -10,7 +10,7 @@ from chainsim.study.bench import Bench, Variant
 from chainsim.study.engines import SerialEngine
 from chainsim.study.heights import height_of, raised
 from chainsim.study.limit_estimates import carried_mass, estimate, wrapped_mass
-from chainsim.study.limit_questions import number_at, question
+from chainsim.study.limit_questions import number_at, question, questions
 from chainsim.study.limits import Probe, find_limit
 from chainsim.study.mend import mend, sensible_keys
 from chainsim.study.portable import file_text
@@ -241,3 +241,13 @@ def test_a_taller_lift_has_more_links_and_nothing_else_changed():
     assert [point[1] for point in taller.wall[0].points] == pytest.approx([-0.05, 0.58])
     assert taller.balls.unload_at == pytest.approx(scenario.balls.unload_at + 0.08)
     assert taller.sprocket[1].mount.mass == scenario.sprocket[1].mount.mass
+
+
+def test_a_key_is_asked_both_ways_and_its_scan_is_run_once():
+    with bench() as one:
+        up, down = (find_limit(q, one) for q in questions(lift(), "sprocket.tail.mount.mass"))
+        runs = len(list(one.store.runs()))
+    assert up.fails is None
+    assert down.fails.good.value == pytest.approx(THRESHOLD - wrap(lift()), rel=0.011)
+    # Nine of the scan, two beyond each end where nothing fails, and the bisections.
+    assert runs < 9 + 2 + 2 * 8 + 2

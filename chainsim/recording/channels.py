@@ -33,8 +33,8 @@ class Channel(NamedTuple):
     dtype : str
         Type in which it is stored.
     share : float
-        Part of its plain size that is left after packing [dimensionless], as measured on real runs;
-        used to announce the size of a recording.
+        Part of its plain size that is left after packing [dimensionless], as measured where all
+        values carry noise; used to announce the size of a recording.
     bulk : bool
         Whether a summary leaves it out.
     """

@@ -110,17 +110,17 @@ class FileStore:
         samples = None if fixed else self._length()
         with self._reading(f"'{name}'"):
             dataset = self._dataset(name)
-            dims = len(shape(name).dims) if fixed else 1 + len(_other_dims(name))
+            dims = len(shape(name).dims) if fixed else 1 + len(channel(name).dims)
             if dataset.ndim != dims or dataset.dtype.kind not in "iuf":
                 raise ValueError(f"it has {dataset.ndim} axes of {dataset.dtype}, not {dims}")
             if samples is None:
                 return dataset[window] if dataset.ndim else dataset[()]
             if not self._rests:
-                return dataset[range_of(window, samples)]
+                return dataset[_within(window, samples)]
             values = joined(dataset[:], self._rests.get(name))
             if len(values) < samples:
                 raise ValueError("its newest samples do not fit the others")
-            return values[range_of(window, samples)]
+            return values[_within(window, samples)]
 
     def table(self, name: str) -> dict[str, np.ndarray | Choice]:
         """Return the columns of a table; none where it was never written."""
@@ -219,8 +219,8 @@ class FileStore:
         return Choice(values, texts)
 
 
-def range_of(window: slice, samples: int) -> slice:
-    """Return a window with plain bounds within a number of samples [dimensionless]."""
+def _within(window: slice, samples: int) -> slice:
+    """Return a window with plain bounds within a number of samples."""
     return slice(*window.indices(samples))
 
 
@@ -253,10 +253,6 @@ def _is_known(path: str) -> bool:
         return bool(shape(path) if path.startswith("geometry/") else channel(path))
     except RecordingError:
         return False
-
-
-def _other_dims(name: str) -> tuple[str, ...]:
-    return channel(name).dims
 
 
 def _plain(value: Any) -> Any:

@@ -5,41 +5,20 @@ from __future__ import annotations
 from collections.abc import Mapping
 from functools import cached_property
 from pathlib import Path
-from typing import TYPE_CHECKING, Any, Protocol
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
 from chainsim.errors import RecordingError, ScenarioError
 from chainsim.recording.channels import TIME, channel
 from chainsim.recording.geometry import shape
-from chainsim.recording.tables import Choice, to_rows
+from chainsim.recording.store import Store
+from chainsim.recording.tables import to_rows
 
 if TYPE_CHECKING:
     from chainsim.integration.samples import BallRow, Event, Extreme
     from chainsim.recording.rows import FindingRow, ModeRow, StrandRow
     from chainsim.scenario import Scenario
-
-
-class Store(Protocol):
-    """Where a recording's values are kept.
-
-    1. `names` lists channels and geometry by path; `read` gives the values of one of them.
-    2. `table` gives the columns of a table, none for one that was never written.
-    3. `attributes` gives the root attributes, `labels` the labels along an axis, `texts` the
-       scenario's texts.
-    4. A value that is missing or damaged raises RecordingError, nothing else.
-    """
-
-    path: Path | None
-
-    def names(self) -> list[str]: ...
-    def read(self, name: str, window: slice) -> np.ndarray: ...
-    def table(self, name: str) -> dict[str, np.ndarray | Choice]: ...
-    def attributes(self) -> dict[str, Any]: ...
-    def labels(self, dim: str) -> tuple[str, ...]: ...
-    def texts(self) -> dict[str, str]: ...
-    def scenario(self) -> Any: ...
-    def close(self) -> None: ...
 
 
 class Recording:

@@ -10,7 +10,7 @@ import numpy as np
 from chainsim.recording.channels import CHANNELS, channel, is_kept
 
 PER_FILE = 60_000
-"""Size [bytes] of texts, tables and geometry, measured on the demo."""
+"""Size [bytes] of texts, tables and geometry, measured on short recordings."""
 PER_CHANNEL = 2_500
 """Size [bytes] of a dataset's header and index, measured."""
 LOSSES = 8

@@ -13,9 +13,9 @@ from matplotlib.patches import Circle, Polygon
 
 from chainsim.report.parts import (
     carrier_parts,
+    held_seat,
     highest_tension,
     n_slots,
-    scalar,
     sprocket_parts,
     standing_parts,
     view_box,
@@ -78,6 +78,8 @@ class Parts(NamedTuple):
         Limits of the tension classes [N].
     ball_radius : float
         Radius of a ball [m].
+    held : tuple of 2 floats or None
+        Center of a held ball along t and n of its link [m].
     """
 
     standing: list
@@ -87,6 +89,7 @@ class Parts(NamedTuple):
     box: tuple[float, ...]
     edges: np.ndarray
     ball_radius: float
+    held: tuple[float, float] | None
 
 
 def drawing_parts(rec: Any) -> Parts:
@@ -100,7 +103,8 @@ def drawing_parts(rec: Any) -> Parts:
         pockets,
         view_box(rec, sprockets, standing),
         tension_edges(highest_tension(rec)[0]),
-        scalar(rec, "geometry/ball_radius"),
+        0.5 * rec.scenario.balls.diameter if rec.scenario.balls else 0.0,
+        held_seat(rec),
     )
 
 
@@ -146,6 +150,19 @@ def _draw_balls(axes: Axes, rec: Any, sample: int, radius: float) -> None:
     in_use = at(rec, "balls/number", sample) >= 0
     places = 1e3 * at(rec, "balls/position", sample)[in_use]
     circles = [Circle(place, 1e3 * radius) for place in places if np.isfinite(place).all()]
+    axes.add_collection(
+        PatchCollection(circles, facecolor=BALL_FILL, edgecolor=INK, linewidth=0.9, zorder=6)
+    )
+
+
+def _draw_held_balls(axes: Axes, rec: Any, sample: int, parts: Parts, pins: np.ndarray) -> None:
+    """Draw a ball in every carrier that holds one."""
+    if parts.held is None:
+        return
+    loaded = at(rec, "carriers/loaded", sample) > 0
+    links = [c["link"] for c, is_loaded in zip(parts.carriers, loaded, strict=True) if is_loaded]
+    places = [1e3 * on_link(pins, link, [parts.held])[0] for link in links]
+    circles = [Circle((x, y), 1e3 * parts.ball_radius) for x, y in places]
     axes.add_collection(
         PatchCollection(circles, facecolor=BALL_FILL, edgecolor=INK, linewidth=0.9, zorder=6)
     )
@@ -199,6 +216,7 @@ def draw_lift(axes: Axes, rec: Any, sample: int, parts: Parts | None = None) -> 
     )
     _draw_chain(axes, pins, at(rec, "links/tension", sample), parts.edges)
     _draw_carriers(axes, parts, pins)
+    _draw_held_balls(axes, rec, sample, parts, pins)
     _draw_balls(axes, rec, sample, parts.ball_radius)
     left, bottom, right, top = (1e3 * side for side in parts.box)
     is_mirrored = rec.scenario.view == "back"

@@ -7,6 +7,8 @@ from typing import Any
 
 import numpy as np
 
+from chainsim.model.pockets import pocket_form
+
 OUTLINE_POINTS = 160
 """Most points of one tooth outline on the page [dimensionless]."""
 
@@ -128,6 +130,17 @@ def view_box(rec: Any, parts: list[dict], standing: list[dict]) -> tuple[float, 
         corners += [corners[0] - reach, corners[1] + reach]
     stack = np.asarray(corners)
     return (*stack.min(axis=0), *stack.max(axis=0))
+
+
+def held_seat(rec: Any) -> tuple[float, float] | None:
+    """Return the center of a held ball along t and n of its link [m], None where none is held."""
+    scenario = rec.scenario
+    if scenario.balls is None or scenario.carriers is None or "carriers/loaded" not in rec:
+        return None
+    if scenario.balls.model != "fixed":
+        return None
+    radius = 0.5 * scenario.balls.diameter
+    return pocket_form(scenario.carriers.pocket, radius, scenario.chain.pitch).seat
 
 
 def n_slots(rec: Any) -> int:

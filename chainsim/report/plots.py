@@ -94,6 +94,13 @@ PLOTS: tuple[Plot, ...] = (
         over_time(series.excursion_panels),
     ),
     Plot(
+        "sag",
+        "sag",
+        "Sag of leaning strands",
+        "How far a strand that leans hangs below the straight line between its ends.",
+        over_time(series.sag_panels),
+    ),
+    Plot(
         "takeup-travel",
         "sag",
         "Take-up travel",

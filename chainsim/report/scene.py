@@ -9,6 +9,7 @@ import numpy as np
 from chainsim.report.moments import is_lost, loss_time, marks
 from chainsim.report.parts import (
     carrier_parts,
+    held_seat,
     highest_tension,
     n_slots,
     sampled,
@@ -65,6 +66,9 @@ def _motion_channels(rec: Any, samples: np.ndarray, box: tuple[float, ...]) -> l
     if "mounts/weight" in rec:
         drop = np.nan_to_num(sampled(rec, "mounts/weight", samples))
         channels.append(packed_range("weights", drop, drop.min(axis=0), drop.max(axis=0)))
+    if held_seat(rec):
+        loaded = sampled(rec, "carriers/loaded", samples).astype(int)
+        channels.append(packed_counts("loaded", loaded))
     if n_slots(rec):
         position = flat(rec, "balls/position", samples)
         channels += [
@@ -135,9 +139,10 @@ def build_scene(rec: Any, findings: list) -> tuple[dict, str]:
         "slots": n_slots(rec),
         "pitch": float(rec.scenario.chain.pitch),
         "roller": scalar(rec, "geometry/roller_radius"),
-        "ball": scalar(rec, "geometry/ball_radius"),
+        "ball": 0.5 * rec.scenario.balls.diameter if rec.scenario.balls else 0.0,
         "sprockets": parts,
         "carriers": carriers,
+        "held": held_seat(rec),
         "pockets": pockets,
         "standing": standing,
         "lost": {str(b.number): loss_time(rec, b) for b in rec.balls if is_lost(b.fate)},

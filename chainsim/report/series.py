@@ -12,10 +12,13 @@ from typing import Any
 
 import numpy as np
 
-from chainsim.analysis.chain_motion import chain_speed, excursion
+from chainsim.analysis.chain_motion import chain_speed, excursion, sag
 from chainsim.analysis.ride import ball_acceleration
 from chainsim.analysis.survey import survey
 from chainsim.analysis.tensions import strand_ends
+
+LEANING = 0.1
+"""Sideways share of a chord from which a strand counts as leaning [dimensionless]."""
 
 DEMANDED = "demanded"
 """Label of the curve that the drive was asked to follow."""
@@ -118,6 +121,18 @@ def excursion_panels(rec: Any) -> list[Panel]:
         curves = (Curve("outward", 1e3 * found.outward), Curve("inward", -1e3 * found.inward))
         shown = tuple(limits) if strand.carrying else ()
         panels.append(Panel(strand_title(strand), "excursion", "mm", curves, shown))
+    return panels
+
+
+def sag_panels(rec: Any) -> list[Panel]:
+    """Sag below the chord of every strand that leans [mm]; an upright one has none."""
+    s = survey(rec)
+    panels = []
+    for k, strand in enumerate(s.strands):
+        chord = s.center[0, strand.end] - s.center[0, strand.start]
+        if abs(chord[0]) > LEANING * np.linalg.norm(chord):
+            curve = Curve("", 1e3 * sag(s, k))
+            panels.append(Panel(strand_title(strand), "sag", "mm", (curve,)))
     return panels
 
 

@@ -26,7 +26,7 @@ function show() {
   scene.readouts.forEach((entry, k) => {
     lines.push([entry.label, (value("readouts", k) * entry.factor).toFixed(entry.digits) + " " + entry.unit]);
   });
-  if (scene.slots) lines.push(["Balls seated", String(counts.aboard)]);
+  if (scene.slots || scene.held) lines.push(["Balls seated", String(counts.aboard)]);
   lines.push(["Links that push", String(counts.pushing)]);
   lines.forEach((line, k) => {
     let row = readouts.children[k];

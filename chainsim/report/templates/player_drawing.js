@@ -178,20 +178,39 @@ function drawChain(context, view, ratio, pins) {
   return pushing.length;
 }
 
+function onLink(pins, link, points) {
+  const a = pins[link];
+  const b = pins[(link + 1) % nPins];
+  const length = Math.hypot(b[0] - a[0], b[1] - a[1]) || 1;
+  const t = [(b[0] - a[0]) / length, (b[1] - a[1]) / length];
+  return points.map((p) => [a[0] + p[0] * t[0] + p[1] * t[1], a[1] + p[0] * t[1] - p[1] * t[0]]);
+}
+
 function drawCarriers(context, view, ratio, pins) {
   context.strokeStyle = INK;
   context.lineWidth = 1.5 * ratio;
   context.lineJoin = "round";
   for (const carrier of scene.carriers) {
-    const a = pins[carrier.link];
-    const b = pins[(carrier.link + 1) % nPins];
-    const length = Math.hypot(b[0] - a[0], b[1] - a[1]) || 1;
-    const t = [(b[0] - a[0]) / length, (b[1] - a[1]) / length];
-    const outline = scene.pockets[carrier.pocket];
-    trace(context, view, outline.map((p) =>
-      [a[0] + p[0] * t[0] + p[1] * t[1], a[1] + p[0] * t[1] - p[1] * t[0]]), false);
+    trace(context, view, onLink(pins, carrier.link, scene.pockets[carrier.pocket]), false);
     context.stroke();
   }
+}
+
+function drawHeldBalls(context, view, ratio, pins) {
+  if (!scene.held) return 0;
+  let count = 0;
+  context.lineWidth = 1.3 * ratio;
+  context.strokeStyle = INK;
+  context.fillStyle = "#f4ead6";
+  scene.carriers.forEach((carrier, k) => {
+    const loaded = raw("loaded", k, now.frame);
+    if (!loaded) return;
+    count += loaded;
+    disc(context, view, onLink(pins, carrier.link, [scene.held])[0], scene.ball * view.scale);
+    context.fill();
+    context.stroke();
+  });
+  return count;
 }
 
 function drawBalls(context, view, ratio) {
@@ -285,7 +304,7 @@ function drawView(canvas, box, pins, place) {
   scene.sprockets.forEach((wheel, k) => drawSprocket(context, view, ratio, wheel, k));
   const pushing = drawChain(context, view, ratio, pins);
   drawCarriers(context, view, ratio, pins);
-  const aboard = drawBalls(context, view, ratio);
+  const aboard = drawHeldBalls(context, view, ratio, pins) + drawBalls(context, view, ratio);
   drawRing(context, view, ratio, place);
   drawScaleBar(context, canvas, view, ratio);
   return { pushing: pushing, aboard: aboard };

@@ -1,6 +1,6 @@
 """Measure what a sweep costs beside its runs, and work out what a million runs would take.
 
-``python benchmarks/million_runs.py`` writes benchmarks/million-runs.md. It takes about five
+``python -m benchmarks.million_runs`` writes benchmarks/million-runs.md. It takes about five
 minutes on two cores; measure on a machine that does nothing else.
 """
 
@@ -14,21 +14,22 @@ import time
 from collections.abc import Callable
 from pathlib import Path
 
+from chainsim.scenario import read_scenario
+from chainsim.study.engines import SerialEngine, cores
+from chainsim.study.forecast import duration_text, size_text
+from chainsim.study.index import Index
+from chainsim.study.jobs import SIMULATE, Job
+from chainsim.study.plan_reading import parse_plan
+from chainsim.study.points import Point, points
+from chainsim.study.processes import ProcessEngine
+from chainsim.study.store import (
+    Store,
+    rows_of,
+)
+from chainsim.study.sweep import run_points
+from chainsim.study.sweep_parts import Settings
+
 HERE = Path(__file__).parent
-sys.path.insert(0, str(HERE.parent))
-os.environ["PYTHONPATH"] = str(HERE.parent)
-
-from chainsim.scenario import read_scenario  # noqa: E402
-from chainsim.study.engines import SerialEngine, cores  # noqa: E402
-from chainsim.study.forecast import duration_text, size_text  # noqa: E402
-from chainsim.study.index import Index  # noqa: E402
-from chainsim.study.jobs import SIMULATE, Job  # noqa: E402
-from chainsim.study.plan_reading import parse_plan  # noqa: E402
-from chainsim.study.points import Point, points  # noqa: E402
-from chainsim.study.processes import ProcessEngine  # noqa: E402
-from chainsim.study.store import Store  # noqa: E402
-from chainsim.study.sweep import Settings, rows_of, run_points  # noqa: E402
-
 SCENARIO = HERE.parent / "scenarios" / "tail-driven.toml"
 EMPTY = "benchmarks.million_runs:empty"
 BUSY = "benchmarks.million_runs:busy"
@@ -203,7 +204,7 @@ def page(found: dict[str, float]) -> str:
     most = found["run"] / found["dask"]
     return f"""# A million runs
 
-`python benchmarks/million_runs.py` writes this page. Measured on {cores()} cores of a shared
+`python -m benchmarks.million_runs` writes this page. Measured on {cores()} cores of a shared
 machine, Python {sys.version_info.major}.{sys.version_info.minor}; computed values follow from
 the measured ones by the rules that stand beside them.
 
@@ -241,6 +242,7 @@ def _line(found: dict[str, float], workers: int) -> tuple[str, ...]:
 
 
 if __name__ == "__main__":
+    os.environ["PYTHONPATH"] = str(HERE.parent)  # workers find the tasks of this file by name
     text = page(measure())
     (HERE / "million-runs.md").write_text(text, encoding="utf-8")
     print(text)

@@ -24,7 +24,8 @@ from chainsim.study.index import Index
 from chainsim.study.plan import Keep
 from chainsim.study.processes import ProcessEngine
 from chainsim.study.store import Store
-from chainsim.study.sweep import Settings, run_points
+from chainsim.study.sweep import run_points
+from chainsim.study.sweep_parts import Settings
 from tests.unit.study_tasks import done_in, points_of
 
 pytestmark = pytest.mark.skipif(sys.platform == "win32", reason="signals of POSIX")

@@ -9,8 +9,8 @@ from rich.table import Table
 from rich.text import Text
 
 from chainsim.report.sweep_page import counts_text, reserve_text, short_names
+from chainsim.study.limit_answer import Limit
 from chainsim.study.limit_estimates import Estimate
-from chainsim.study.limits import Limit
 from chainsim.study.mend import Mend
 from chainsim.study.proving import Proving
 from chainsim.study.ranking import reason

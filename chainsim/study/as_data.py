@@ -6,14 +6,14 @@ import math
 from collections.abc import Mapping, Sequence
 from typing import Any
 
+from chainsim.study.limit_answer import Bracket, Limit, Probe
 from chainsim.study.limit_estimates import Estimate
-from chainsim.study.limits import Bracket, Limit, Probe
 from chainsim.study.mend import Mend
 from chainsim.study.proving import Proving
 from chainsim.study.ranking import Ranked, reason
 from chainsim.study.rows import FAILED, outcome
 from chainsim.study.step_check import Drift
-from chainsim.study.sweep import Tally
+from chainsim.study.sweep_parts import Tally
 from chainsim.study.sweeping import Sweep
 from chainsim.study.unsure import Turn, Unsure
 from chainsim.units import UNITS

@@ -20,7 +20,8 @@ from chainsim.study.portable import file_text
 from chainsim.study.processes import ProcessEngine
 from chainsim.study.rows import Row
 from chainsim.study.store import Store
-from chainsim.study.sweep import Settings, Watcher, run_points
+from chainsim.study.sweep import run_points
+from chainsim.study.sweep_parts import Settings, Watcher
 
 
 class Variant(NamedTuple):

@@ -15,25 +15,15 @@ from collections.abc import Callable, Generator, Iterable, Iterator, Mapping
 from typing import Any
 
 from chainsim.errors import CallError
-from chainsim.study.jobs import (
-    NO_SPACE,
-    ONE_THREAD,
-    Job,
-    Outcome,
-    failed_row,
-    job_from_data,
-    one_thread_each,
-    perform,
-)
+from chainsim.study.jobs import NO_SPACE, Job, Outcome, job_from_data, one_thread_each
+from chainsim.study.performing import failed_row, perform
 from chainsim.study.rows import DONE, FAILED
+from chainsim.study.slurm import _SLURM_DEFAULTS, slurm_cluster
 from chainsim.study.store import DiskFull, Store
 
 _TICK = 0.25  # longest silence between two reports to the caller [s]
 _AHEAD = 2  # jobs handed to the scheduler per worker, so that none is ever idle
 _COUNT_EVERY = 2.0  # between two counts of the workers [s]
-_SLURM_DEFAULTS = {"walltime": "01:00:00", "memory": "2 GB", "jobs": 1}
-# A worker leaves before the queue ends it, and not all at the same moment.
-_LEAVE_EARLY = ["--lifetime-stagger", "4m", "--lifetime-restart"]
 
 
 class DaskEngine:
@@ -229,64 +219,3 @@ def _distributed() -> Any:
             "the dask engine needs packages that are not installed: pip install chainsim[cluster]"
         ) from None
     return distributed
-
-
-def slurm_cluster(settings: Mapping[str, Any]) -> Any:
-    """Cluster whose workers are jobs of a SLURM queue, one core each; no job is sent yet.
-
-    Parameters
-    ----------
-    settings : mapping of str to object
-        `queue`, `account`, `walltime` (hours:minutes:seconds) and `memory` of a job.
-
-    Returns
-    -------
-    SLURMCluster
-        The cluster.
-
-    Raises
-    ------
-    CallError
-        If dask-jobqueue is not installed, or the wall time is not written so.
-    """
-    try:
-        from dask_jobqueue import SLURMCluster
-    except ImportError:
-        raise CallError("a SLURM queue needs: pip install chainsim[cluster]") from None
-    chosen = {**_SLURM_DEFAULTS, **settings}
-    return SLURMCluster(
-        queue=chosen.get("queue"),
-        account=chosen.get("account"),
-        cores=1,
-        processes=1,
-        memory=chosen["memory"],
-        walltime=chosen["walltime"],
-        worker_extra_args=["--lifetime", f"{_lifetime(chosen['walltime'])}s", *_LEAVE_EARLY],
-        job_script_prologue=[f"export {name}=1" for name in ONE_THREAD],
-        scheduler_options={"dashboard_address": None},
-    )
-
-
-def _lifetime(walltime: str) -> int:
-    """Seconds after which a worker leaves: nine tenths of its wall time.
-
-    Parameters
-    ----------
-    walltime : str
-        Hours, minutes and seconds, ``01:00:00``.
-
-    Returns
-    -------
-    int
-        Lifetime [s].
-
-    Raises
-    ------
-    CallError
-        If the wall time is not written so.
-    """
-    parts = walltime.split(":")
-    if len(parts) != 3 or not all(part.isdecimal() for part in parts):
-        raise CallError(f"walltime {walltime!r}: hours, minutes and seconds, such as 01:00:00")
-    hours, minutes, seconds = (int(part) for part in parts)
-    return (hours * 3600 + minutes * 60 + seconds) * 9 // 10

@@ -16,7 +16,8 @@ import os
 from collections.abc import Callable, Generator, Iterable
 from typing import Protocol
 
-from chainsim.study.jobs import Job, Outcome, perform
+from chainsim.study.jobs import Job, Outcome
+from chainsim.study.performing import perform
 from chainsim.study.plan import EngineChoice
 
 

@@ -13,7 +13,7 @@ from chainsim.closed_forms import (
     take_up_bounce_frequency,
 )
 from chainsim.study.heights import height_of
-from chainsim.study.limit_questions import takeup_sprocket
+from chainsim.study.scenario_numbers import takeup_sprocket
 
 _ROUNDING = 1e-6  # a strand that holds 13 balls to rounding holds 13, not 14
 

@@ -3,102 +3,19 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Mapping
-from dataclasses import dataclass, replace
+from collections.abc import Callable
+from dataclasses import replace
 from typing import Any
 
 from chainsim.errors import CallError
-from chainsim.scenario.table import Leaf, leaves
 from chainsim.study.heights import height_of, raised, raising_step
-from chainsim.units import format_si, to_si
+from chainsim.study.limit_question import Question
+from chainsim.study.scenario_numbers import TAKEUP_KEYS, number_at, takeup_sprocket
+from chainsim.units import to_si
 
-_TAKEUP_KEYS = {  # kind of mount -> key of the value that sets its pull
-    "hung": "mass",
-    "sliding": "mass",
-    "arm": "mass",
-    "counterweight": "weight",
-    "spring": "set_force",
-}
 _FIXED_KINDS = ("fixed", "screwed")
 _LARGEST_GROWTH = 0.05  # beyond any chain that still runs
 _MOST_SURPLUS = 6.0  # pitches of surplus chain at the far end of the scan
-
-
-@dataclass(frozen=True)
-class Question:
-    """What is searched.
-
-    Attributes
-    ----------
-    name : str
-        `takeup`, `speed`, `height`, `wear`, `slack`, or a dotted key.
-    title : str
-        What varies, in words.
-    unit_kind : str
-        Kind of unit of the value.
-    low, high : float
-        Range of the coarse scan [SI unit of the kind].
-    log : bool
-        True where the scan rises by equal ratios.
-    harder : int
-        -1 where a smaller value asks more of the lift, +1 where a larger one does
-        (dimensionless).
-    present : float
-        Value in the scenario [SI unit of the kind].
-    values : callable
-        Gives the scenario values, by dotted key, that make the value what it is.
-    step : float or None
-        Smallest change that makes sense [SI unit of the kind]; None for any.
-    least : float
-        Smallest possible value [SI unit of the kind].
-    """
-
-    name: str
-    title: str
-    unit_kind: str
-    low: float
-    high: float
-    log: bool
-    harder: int
-    present: float
-    values: Callable[[float], Mapping[str, Any]]
-    step: float | None = None
-    least: float = -math.inf
-
-    def snapped(self, value: float) -> float:
-        """Nearest value that can be had.
-
-        Parameters
-        ----------
-        value : float
-            Any value [SI unit of the kind].
-
-        Returns
-        -------
-        float
-            The value itself, or the nearest one whole steps away from the present value
-            [SI unit of the kind].
-        """
-        value = max(value, self.least)
-        if self.step is None:
-            return float(f"{value:.12g}")
-        steps = round((value - self.present) / self.step)
-        return self.present + steps * self.step
-
-    def shown(self, value: float) -> str:
-        """The value with a readable unit.
-
-        Parameters
-        ----------
-        value : float
-            A value [SI unit of the kind].
-
-        Returns
-        -------
-        str
-            Such as ``0.23 kg``.
-        """
-        return format_si(value, self.unit_kind)
 
 
 def question(scenario: Any, name: str, low: str | None = None, high: str | None = None) -> Question:
@@ -175,36 +92,9 @@ def questions(
     ]
 
 
-def takeup_sprocket(scenario: Any) -> Any:
-    """Sprocket whose mount takes up the slack.
-
-    Parameters
-    ----------
-    scenario : Scenario
-        The lift.
-
-    Returns
-    -------
-    Sprocket
-        The first one that can move.
-
-    Raises
-    ------
-    CallError
-        If none can.
-    """
-    for sprocket in scenario.sprocket:
-        if sprocket.mount.kind in _TAKEUP_KEYS:
-            return sprocket
-    raise CallError(
-        "limit takeup: every axle of this lift is fixed, so nothing takes up slack; "
-        "ask for `slack` instead"
-    )
-
-
 def _takeup(scenario: Any) -> Question:
     sprocket = takeup_sprocket(scenario)
-    kind = _TAKEUP_KEYS[sprocket.mount.kind]
+    kind = TAKEUP_KEYS[sprocket.mount.kind]
     key = f"sprocket.{sprocket.name}.mount.{kind}"
     present = getattr(sprocket.mount, kind)
     if not present:
@@ -277,40 +167,6 @@ def _any_key(scenario: Any, name: str) -> Question:
         (lambda value: {name: round(value)}) if whole else (lambda value: {name: value}),
         1.0 if whole else None,
     )  # fmt: skip
-
-
-def number_at(scenario: Any, key: str) -> Leaf:
-    """Number of a scenario by its dotted key.
-
-    Parameters
-    ----------
-    scenario : Scenario
-        The scenario.
-    key : str
-        Dotted key.
-
-    Returns
-    -------
-    Leaf
-        The value with its unit kind.
-
-    Raises
-    ------
-    CallError
-        If there is no number of that key; the nearest are offered.
-    """
-    import difflib
-
-    numbers = {
-        leaf.key: leaf
-        for leaf in leaves(scenario)
-        if isinstance(leaf.value, int | float) and not isinstance(leaf.value, bool)
-    }
-    if key not in numbers:
-        near = difflib.get_close_matches(key, [*numbers, *_BY_NAME], 3)
-        hint = f"did you mean {', '.join(near)}?" if near else f"or one of {', '.join(_BY_NAME)}"
-        raise CallError(f"{key!r} is no number of this scenario; {hint}")
-    return numbers[key]
 
 
 _BY_NAME: dict[str, Callable[[Any], Question]] = {

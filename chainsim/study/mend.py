@@ -9,8 +9,8 @@ from typing import Any
 
 from chainsim.errors import CallError
 from chainsim.study.bench import Bench, Variant
-from chainsim.study.limit_questions import number_at
-from chainsim.study.limits import FAILS, Probe
+from chainsim.study.limit_answer import FAILS, Probe
+from chainsim.study.scenario_numbers import number_at
 from chainsim.units import format_si
 
 # Factors tried on both sides of the present value; counts move by whole steps instead.

@@ -2,90 +2,23 @@
 
 from __future__ import annotations
 
-import contextlib
-import json
 import queue
 import signal
-import subprocess
-import sys
-import threading
 import time
 from collections import deque
 from collections.abc import Callable, Generator, Iterable, Iterator
-from pathlib import Path
-from typing import IO, Any
+from typing import Any
 
 from chainsim.errors import RunError
-from chainsim.study.jobs import NO_SPACE, Job, Outcome, failed_row, one_thread_each
+from chainsim.study.jobs import NO_SPACE, Job, Outcome
+from chainsim.study.performing import failed_row
 from chainsim.study.rows import DONE, FAILED
 from chainsim.study.store import DiskFull, Store
+from chainsim.study.worker_process import WorkerProcess, log_of
 
 TRIES = 2
 _TICK = 0.25  # longest silence between two reports to the caller [s]
 _STILLBORN = 3  # per worker, of processes that ended before they were ready
-_FAREWELL = 2.0  # time a worker has to leave by itself before it is ended [s]
-
-
-class _Worker:
-    """A worker process and what it has in hand."""
-
-    def __init__(self, reports: queue.SimpleQueue[tuple[_Worker, Any]], log: IO[str]) -> None:
-        self.job: Job | None = None
-        self.since = 0.0
-        self.too_long = False
-        self.ready = False
-        # Its own process group: Ctrl-C reaches the driver alone, which then decides.
-        apart: dict[str, Any] = (
-            {"creationflags": getattr(subprocess, "CREATE_NEW_PROCESS_GROUP", 0)}
-            if sys.platform == "win32"
-            else {"start_new_session": True}
-        )
-        with one_thread_each():
-            self.process = subprocess.Popen(
-                [sys.executable, "-m", "chainsim.study.worker"],
-                stdin=subprocess.PIPE,
-                stdout=subprocess.PIPE,
-                stderr=log,
-                text=True,
-                encoding="utf-8",
-                **apart,
-            )
-        thread = threading.Thread(target=self._listen, args=(reports,), daemon=True)
-        thread.start()
-
-    def _listen(self, reports: queue.SimpleQueue[tuple[_Worker, Any]]) -> None:
-        """Pass on every answer, then None when the process is gone."""
-        answers: IO[str] | None = self.process.stdout
-        with contextlib.suppress(ValueError, OSError):
-            for line in answers or ():
-                reports.put((self, json.loads(line)))
-        self.process.wait()
-        reports.put((self, None))
-
-    def send(self, message: dict[str, Any]) -> None:
-        """Hand a message over; a worker that is gone reports that by itself."""
-        with contextlib.suppress(OSError, ValueError):
-            assert self.process.stdin is not None
-            self.process.stdin.write(json.dumps(message) + "\n")
-            self.process.stdin.flush()
-
-    def take(self, job: Job) -> None:
-        """Start a job."""
-        self.job, self.since = job, time.monotonic()
-        self.send({"job": job.to_data()})
-
-    def end(self, at_once: bool) -> None:
-        """End the process."""
-        with contextlib.suppress(OSError):
-            if at_once:
-                self.process.kill()
-            assert self.process.stdin is not None
-            self.process.stdin.close()
-        try:
-            self.process.wait(_FAREWELL)
-        except subprocess.TimeoutExpired:
-            self.process.kill()
-            self.process.wait()
 
 
 class ProcessEngine:
@@ -105,8 +38,8 @@ class ProcessEngine:
         self.workers = workers
         self._stay = stay
         self.wall_limit = wall_limit
-        self._reports: queue.SimpleQueue[tuple[_Worker, Any]] = queue.SimpleQueue()
-        self._team: list[_Worker] = []
+        self._reports: queue.SimpleQueue[tuple[WorkerProcess, Any]] = queue.SimpleQueue()
+        self._team: list[WorkerProcess] = []
         self._again: deque[Job] = deque()
         self._tries: dict[str, int] = {}
         self._warm = False
@@ -143,7 +76,7 @@ class ProcessEngine:
             if not self._team:
                 self._warm = False
                 self._log = log_of(first)
-                self._team = [_Worker(self._reports, self._log) for _ in range(self.workers)]
+                self._team = [WorkerProcess(self._reports, self._log) for _ in range(self.workers)]
                 self._team[0].send({"warm": first.to_data()})
             while True:
                 self._hand_out(waiting, stopping)
@@ -199,12 +132,12 @@ class ProcessEngine:
                 worker.too_long = True
                 worker.process.kill()
 
-    def _buried(self, worker: _Worker) -> Outcome | None:
+    def _buried(self, worker: WorkerProcess) -> Outcome | None:
         """Replace a worker that has died; its job is tried again or recorded as failed."""
         if worker not in self._team:
             return None
         job = worker.job
-        self._team[self._team.index(worker)] = _Worker(self._reports, self._log)
+        self._team[self._team.index(worker)] = WorkerProcess(self._reports, self._log)
         self._warm = True  # if it died while compiling, the others compile for themselves
         if not worker.ready:
             self._count_stillbirth()
@@ -239,22 +172,6 @@ class ProcessEngine:
         except DiskFull as error:
             return Outcome(job.id, NO_SPACE, NO_SPACE, str(error))
         return Outcome(job.id, FAILED, code, text)
-
-
-def log_of(job: Job) -> IO[str]:
-    """Open the file that takes what workers print, so that it never disturbs a live table.
-
-    Parameters
-    ----------
-    job : Job
-        Any job of the sweep; the file stands in its folder.
-
-    Returns
-    -------
-    file
-        The file, open for appending.
-    """
-    return Path(job.folder, "workers.log").open("a", encoding="utf-8")
 
 
 def _ending(code: int) -> str:

@@ -14,11 +14,12 @@ import contextlib
 import errno
 import json
 import os
-from collections.abc import Container, Iterator
+from collections.abc import Container, Iterator, Sequence
 from pathlib import Path
 
 from chainsim.errors import RecordingError
-from chainsim.study.rows import Row, row_from_data
+from chainsim.study.points import Point
+from chainsim.study.rows import DONE, Row, row_from_data
 
 _RUNS = "runs"
 _FOLDER_DIGITS = 2  # 256 folders keep each of them small at a million runs
@@ -201,3 +202,44 @@ def is_full(error: BaseException) -> bool:
     return isinstance(error, OSError) and (
         error.errno in _NO_SPACE or os.strerror(errno.ENOSPC) in str(error)
     )
+
+
+def rows_of(points: Sequence[Point], store: Store) -> list[Row | None]:
+    """Rows of points, in the order of the points.
+
+    Parameters
+    ----------
+    points : sequence of Point
+        The points.
+    store : Store
+        The run files.
+
+    Returns
+    -------
+    list of (Row or None)
+        None where a point is not done yet.
+    """
+    read: dict[str, Row | None] = {}
+    for point in points:
+        if point.id not in read:
+            read[point.id] = store.read(point.id)
+    return [read[point.id] for point in points]
+
+
+def done_rows(points: Sequence[Point], store: Store) -> list[tuple[Point, Row]]:
+    """Points whose run was completed, each with its row.
+
+    Parameters
+    ----------
+    points : sequence of Point
+        The points.
+    store : Store
+        The run files.
+
+    Returns
+    -------
+    list of (Point, Row)
+        In the order of the points.
+    """
+    pairs = zip(points, rows_of(points, store), strict=True)
+    return [(point, row) for point, row in pairs if row is not None and row.state == DONE]

@@ -3,87 +3,18 @@
 from __future__ import annotations
 
 import contextlib
-from collections.abc import Iterable, Iterator, Sequence
-from dataclasses import dataclass, field
-from pathlib import Path
-from typing import Protocol
+from collections.abc import Iterable, Sequence
 
 from chainsim.errors import Interrupted, RunError
+from chainsim.study.driver_lock import only_driver
 from chainsim.study.engines import Engine
 from chainsim.study.index import Index
 from chainsim.study.interrupts import StopRequest
-from chainsim.study.jobs import NO_SPACE, SET_UP, SIMULATE, Job, Outcome
-from chainsim.study.plan import Keep
+from chainsim.study.jobs import NO_SPACE, SET_UP, Job, Outcome
 from chainsim.study.points import Point
-from chainsim.study.rows import DONE, FAILED, Row
+from chainsim.study.rows import FAILED
 from chainsim.study.store import Store
-
-
-class Watcher(Protocol):
-    """What follows a sweep while it runs."""
-
-    def begin(self, planned: int, reused: int, engine: Engine) -> None:
-        """The sweep starts: so many runs planned, so many finished before."""
-        ...
-
-    def report(self, outcome: Outcome | None) -> None:
-        """A run has ended, or (None) a moment has passed."""
-        ...
-
-    def stopping(self) -> None:
-        """The user has asked to stop; runs in hand are being finished."""
-        ...
-
-    def end(self) -> None:
-        """The sweep is over, for whatever reason."""
-        ...
-
-
-@dataclass(frozen=True)
-class Tally:
-    """What became of the points of a sweep.
-
-    Attributes
-    ----------
-    planned : int
-        Points of the plan, or of the part of it (dimensionless).
-    reused : int
-        Points whose run was finished before (dimensionless).
-    computed : int
-        Runs finished now (dimensionless).
-    failed : int
-        Runs recorded as failed, earlier ones included (dimensionless).
-    """
-
-    planned: int
-    reused: int
-    computed: int
-    failed: int
-
-
-@dataclass(frozen=True)
-class Settings:
-    """How a sweep is carried out.
-
-    Attributes
-    ----------
-    keep : Keep
-        What is kept of every run.
-    task : str
-        What does a run, as ``module:function``.
-    only_failed : bool
-        True to try the failed runs again and nothing else.
-    give_up_after : int
-        Equal failures in a row that stop the sweep (dimensionless).
-    index_name : str
-        File name of the index.
-    """
-
-    keep: Keep = field(default_factory=Keep)
-    task: str = SIMULATE
-    only_failed: bool = False
-    give_up_after: int = 20
-    index_name: str = "index.sqlite"
+from chainsim.study.sweep_parts import Settings, Tally, Watcher
 
 
 def run_points(
@@ -241,85 +172,3 @@ class _Sweep:
         self._alike = (outcome.text, count)
         if count >= self._settings.give_up_after:
             self._trouble = f"the last {count} runs all failed in the same way: {outcome.text}"
-
-
-@contextlib.contextmanager
-def only_driver(lock: Path) -> Iterator[None]:
-    """Keep a second driver out of the same sweep.
-
-    Parameters
-    ----------
-    lock : Path
-        File to lock; the lock ends with the process, however that ends.
-
-    Yields
-    ------
-    None
-        While the lock is held.
-
-    Raises
-    ------
-    RunError
-        If another driver holds it.
-    """
-    with lock.open("a") as file:
-        try:
-            _lock(file.fileno())
-        except OSError:
-            raise RunError(
-                f"{lock.parent}: another sweep is at work in this folder; "
-                "wait for it, or divide the plan with --part"
-            ) from None
-        yield
-
-
-def _lock(descriptor: int) -> None:
-    try:
-        import fcntl
-    except ImportError:  # Windows
-        import msvcrt
-
-        msvcrt.locking(descriptor, msvcrt.LK_NBLCK, 1)  # type: ignore[attr-defined]
-    else:
-        fcntl.lockf(descriptor, fcntl.LOCK_EX | fcntl.LOCK_NB)
-
-
-def rows_of(points: Sequence[Point], store: Store) -> list[Row | None]:
-    """Rows of points, in the order of the points.
-
-    Parameters
-    ----------
-    points : sequence of Point
-        The points.
-    store : Store
-        The run files.
-
-    Returns
-    -------
-    list of (Row or None)
-        None where a point is not done yet.
-    """
-    read: dict[str, Row | None] = {}
-    for point in points:
-        if point.id not in read:
-            read[point.id] = store.read(point.id)
-    return [read[point.id] for point in points]
-
-
-def done_rows(points: Sequence[Point], store: Store) -> list[tuple[Point, Row]]:
-    """Points whose run was completed, each with its row.
-
-    Parameters
-    ----------
-    points : sequence of Point
-        The points.
-    store : Store
-        The run files.
-
-    Returns
-    -------
-    list of (Point, Row)
-        In the order of the points.
-    """
-    pairs = zip(points, rows_of(points, store), strict=True)
-    return [(point, row) for point, row in pairs if row is not None and row.state == DONE]

@@ -15,8 +15,9 @@ from chainsim.study.plan import Plan
 from chainsim.study.points import Point, points
 from chainsim.study.ranking import Ranked, rank
 from chainsim.study.rows import Row
-from chainsim.study.store import Store
-from chainsim.study.sweep import Settings, Tally, Watcher, done_rows, rows_of, run_points
+from chainsim.study.store import Store, done_rows, rows_of
+from chainsim.study.sweep import run_points
+from chainsim.study.sweep_parts import Settings, Tally, Watcher
 
 
 @dataclass(frozen=True)

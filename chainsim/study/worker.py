@@ -17,7 +17,9 @@ import sys
 import threading
 from typing import Any, TextIO
 
-from chainsim.study.jobs import job_from_data, perform, warm
+from chainsim.study.jobs import job_from_data
+from chainsim.study.performing import perform
+from chainsim.study.simulate import warm
 
 
 def main() -> None:

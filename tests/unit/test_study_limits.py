@@ -9,11 +9,13 @@ from chainsim.scenario import parse_scenario
 from chainsim.study.bench import Bench, Variant
 from chainsim.study.engines import SerialEngine
 from chainsim.study.heights import height_of, raised
+from chainsim.study.limit_answer import Probe
 from chainsim.study.limit_estimates import carried_mass, estimate, wrapped_mass
-from chainsim.study.limit_questions import number_at, question, questions
-from chainsim.study.limits import Probe, find_limit
+from chainsim.study.limit_questions import question, questions
+from chainsim.study.limits import find_limit
 from chainsim.study.mend import mend, sensible_keys
 from chainsim.study.portable import file_text
+from chainsim.study.scenario_numbers import number_at
 from tests.unit.study_lift import LIFT, lift
 
 LIFT_TASKS = "tests.unit.study_lift"

@@ -13,8 +13,10 @@ import pytest
 from chainsim.errors import CallError, ScenarioError
 from chainsim.study.amounts import read_amount, spaced
 from chainsim.study.axes import SpreadAxis
-from chainsim.study.plan_reading import key_lines, parse_plan, read_plan
-from chainsim.study.points import BaseScenarios, check_axes, number_of_points, points, run_id
+from chainsim.study.plan_checks import BaseScenarios, check_axes
+from chainsim.study.plan_faults import key_lines
+from chainsim.study.plan_reading import parse_plan, read_plan
+from chainsim.study.points import number_of_points, points, run_id
 from chainsim.study.sampling import index_design, point_seed, shares
 from tests.unit.study_lift import LIFT
 

@@ -14,9 +14,10 @@ from chainsim.study.axes import Choice, ListedAxis
 from chainsim.study.bench import Bench
 from chainsim.study.engines import SerialEngine
 from chainsim.study.maps import maps
-from chainsim.study.proving import prove, situation_values, timing
+from chainsim.study.proving import prove
 from chainsim.study.ranking import rank, reason
 from chainsim.study.rows import Failure, Row
+from chainsim.study.situations import situation_values, timing
 from chainsim.study.step_check import observed_order, verify_step
 from chainsim.study.unsure import turns, unsure
 from tests.unit.study_lift import LIFT, lift

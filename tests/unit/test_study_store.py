@@ -11,7 +11,8 @@ import pytest
 
 from chainsim.errors import RecordingError
 from chainsim.study.index import Index
-from chainsim.study.jobs import Job, perform
+from chainsim.study.jobs import Job
+from chainsim.study.performing import perform
 from chainsim.study.plan import Keep
 from chainsim.study.rows import Failure, Row, outcome, relative_margin, weakest
 from chainsim.study.store import DiskFull, Store, is_full, read_row

@@ -9,14 +9,16 @@ from pathlib import Path
 import pytest
 
 from chainsim.errors import RunError
+from chainsim.study.driver_lock import only_driver
 from chainsim.study.engines import SerialEngine, engine_of
 from chainsim.study.forecast import duration_text, size_text
 from chainsim.study.plan import EngineChoice
 from chainsim.study.plan_reading import read_plan
 from chainsim.study.processes import ProcessEngine
 from chainsim.study.progress import Pace, PlainProgress
-from chainsim.study.store import Store
-from chainsim.study.sweep import Settings, only_driver, rows_of, run_points
+from chainsim.study.store import Store, rows_of
+from chainsim.study.sweep import run_points
+from chainsim.study.sweep_parts import Settings
 from chainsim.study.sweeping import open_sweep
 from tests.unit.study_lift import LIFT
 from tests.unit.study_tasks import done_in, points_of
@@ -236,7 +238,7 @@ def test_engines_are_chosen_by_the_plan():
 def test_a_slurm_job_has_one_core_one_thread_and_leaves_before_it_is_ended():
     pytest.importorskip("dask_jobqueue", reason="the extra [cluster] is not installed")
     from chainsim.errors import CallError
-    from chainsim.study.cluster import slurm_cluster
+    from chainsim.study.slurm import slurm_cluster
 
     with slurm_cluster({"queue": "short", "walltime": "00:50:00", "memory": "3 GB"}) as cluster:
         script = cluster.job_script()

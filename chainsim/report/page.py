@@ -58,7 +58,7 @@ MOTION_CHANNELS = ("pins/position", "pins/velocity", "links/tension", "sprockets
 LEAST_SAMPLES = 3
 """Fewest samples that can be shown [dimensionless]."""
 
-PLAYER_FILES = ("player_frames.js", "player_drawing.js", "player_controls.js")
+SCRIPT_FILES = ("printing.js", "player_frames.js", "player_drawing.js", "player_controls.js")
 
 
 def render_report(rec: Any, path: str | Path) -> Path:
@@ -93,7 +93,7 @@ def report_html(rec: Any) -> str:
     reserve = rec.scenario.limits.reserve
     return render_page(
         "report.html.j2",
-        script=player_script() if has_motion else "",
+        script=page_script(),
         title=rec.scenario.title or rec.scenario.stem,
         view=rec.scenario.view,
         created=rec.attrs.get("created", "at an unknown date"),
@@ -175,9 +175,9 @@ def resource(name: str) -> str:
 
 
 @cache
-def player_script() -> str:
-    """Return the playback script: its files in one function scope."""
-    body = "\n".join(resource(name) for name in PLAYER_FILES)
+def page_script() -> str:
+    """Return the script of the page: its files in one function scope."""
+    body = "\n".join(resource(name) for name in SCRIPT_FILES)
     return f'"use strict";\n(function () {{\n{body}\n}})();'
 
 

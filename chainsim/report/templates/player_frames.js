@@ -1,5 +1,5 @@
 // Unpacks the recorded moments and reads values between two of them.
-// The three player files share one function scope; the page wraps them.
+// The script files share one function scope; the page wraps them.
 const byId = (id) => document.getElementById(id);
 const player = byId("player");
 if (!player) return;

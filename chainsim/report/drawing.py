@@ -14,10 +14,11 @@ from matplotlib.patches import Circle, Polygon
 from chainsim.report.parts import (
     carrier_parts,
     held_seat,
-    highest_tension,
+    highest_tensions,
     n_slots,
     sprocket_parts,
     standing_parts,
+    usual_tension,
     view_box,
 )
 from chainsim.report.style import (
@@ -30,6 +31,7 @@ from chainsim.report.style import (
     new_figure,
     tension_class,
     tension_edges,
+    tension_text,
 )
 
 BALL_FILL = "#f4ead6"
@@ -102,7 +104,7 @@ def drawing_parts(rec: Any) -> Parts:
         carriers,
         pockets,
         view_box(rec, sprockets, standing),
-        tension_edges(highest_tension(rec)[0]),
+        tension_edges(usual_tension(rec)),
         0.5 * rec.scenario.balls.diameter if rec.scenario.balls else 0.0,
         held_seat(rec),
     )
@@ -185,7 +187,7 @@ def tension_key(edges: np.ndarray, has_push: bool) -> list[Line2D]:
     """
     handles = []
     for k, (color, width) in enumerate(zip(TENSION_COLORS, TENSION_WIDTHS, strict=True)):
-        label = f"{edges[k]:.3g} to {edges[k + 1]:.3g} N"
+        label = tension_text(edges, k)
         handles.append(Line2D([], [], color=color, linewidth=width, label=label))
     if has_push:
         handles.append(
@@ -229,7 +231,7 @@ def draw_lift(axes: Axes, rec: Any, sample: int, parts: Parts | None = None) -> 
 
 def lift_figure(rec: Any) -> Figure:
     """Draw the lift at the moment of the highest tension of any link."""
-    _, sample = highest_tension(rec)
+    sample = int(np.nanargmax(highest_tensions(rec)))
     parts = drawing_parts(rec)
     left, bottom, right, top = parts.box
     height = 7.0

@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
+import numpy as np
 from markupsafe import Markup, escape
 
 from chainsim.report.moments import Mark
-from chainsim.report.style import INK, OUTCOME_COLORS, TENSION_COLORS, TENSION_WIDTHS
+from chainsim.report.style import INK, OUTCOME_COLORS, TENSION_COLORS, TENSION_WIDTHS, tension_text
 
 
 def tension_key(top: float) -> Markup:
@@ -16,10 +17,10 @@ def tension_key(top: float) -> Markup:
     top : float
         Upper end of the highest class [N].
     """
-    n = len(TENSION_COLORS)
+    edges = np.linspace(0.0, top, len(TENSION_COLORS) + 1)
     parts = []
     for k, (color, width) in enumerate(zip(TENSION_COLORS, TENSION_WIDTHS, strict=True)):
-        text = f"{k * top / n:.3g} to {(k + 1) * top / n:.3g} N"
+        text = tension_text(edges, k)
         parts.append(key_entry(f'stroke="{color}" stroke-width="{1.4 * width:.1f}"', text))
     parts.append(
         key_entry(f'stroke="{INK}" stroke-width="2" stroke-dasharray="4 3"', "the link pushes")

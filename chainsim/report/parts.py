@@ -42,14 +42,21 @@ def sampled(rec: Any, name: str, samples: np.ndarray) -> np.ndarray:
     return np.concatenate(pieces)
 
 
-def highest_tension(rec: Any) -> tuple[float, int]:
-    """Return the highest tension of any link [N], and the sample in which it was recorded."""
-    found = (-math.inf, 0)
-    for start in range(0, len(rec.time), WINDOW):
-        highest = np.nanmax(rec.read("links/tension", slice(start, start + WINDOW)), axis=1)
-        sample = int(np.argmax(highest))
-        found = max(found, (float(highest[sample]), start + sample))
-    return found
+def highest_tensions(rec: Any) -> np.ndarray:
+    """Return the highest tension of any link at every sample [N], shape (n_samples,)."""
+    pieces = [
+        np.nanmax(rec.read("links/tension", slice(start, start + WINDOW)), axis=1)
+        for start in range(0, len(rec.time), WINDOW)
+    ]
+    return np.concatenate(pieces)
+
+
+def usual_tension(rec: Any) -> float:
+    """Return the tension that is exceeded in 2 % of the samples only [N].
+
+    The tension classes end there, so that one jerk does not make all the rest look light.
+    """
+    return float(np.nanpercentile(highest_tensions(rec), 98.0))
 
 
 def standing_parts(rec: Any) -> list[dict]:
@@ -113,10 +120,13 @@ def carrier_parts(rec: Any) -> tuple[list[dict], list[list]]:
     return carriers, shapes
 
 
+STRAY = 0.35
+"""How far beyond the standing lift a stray chain is still shown, as a share of its larger side."""
+
+
 def view_box(rec: Any, parts: list[dict], standing: list[dict]) -> tuple[float, ...]:
     """Return left, bottom, right and top of what the whole view must show [m]."""
-    pins = sampled(rec, "pins/position", np.arange(0, len(rec.time), max(1, len(rec.time) // 200)))
-    corners = [np.nanmin(pins, axis=(0, 1)), np.nanmax(pins, axis=(0, 1))]
+    corners = [point for line in standing for point in np.asarray(line["points"])]
     for part in parts:
         reach = 1.3 * part["radius"]
         drop = 2.4 * part["radius"] if part["hangs"] or part["weight"] else reach
@@ -124,12 +134,16 @@ def view_box(rec: Any, parts: list[dict], standing: list[dict]) -> tuple[float, 
         corners += [center - [reach, drop], center + reach]
         if part["weight"]:
             corners.append(center + [3.2 * part["radius"], 2.4 * part["radius"]])
-    corners += [point for line in standing for point in np.asarray(line["points"])]
+    low, high = np.min(corners, axis=0), np.max(corners, axis=0)
+    stray = STRAY * float((high - low).max())
+    pins = sampled(rec, "pins/position", np.arange(0, len(rec.time), max(1, len(rec.time) // 200)))
+    reach = 0.0
     if "geometry/pocket_outline" in rec:
         reach = float(np.nanmax(np.abs(rec["geometry/pocket_outline"])))
-        corners += [corners[0] - reach, corners[1] + reach]
-    stack = np.asarray(corners)
-    return (*stack.min(axis=0), *stack.max(axis=0))
+    lowest, highest = np.nanmin(pins, axis=(0, 1)) - reach, np.nanmax(pins, axis=(0, 1)) + reach
+    low = np.minimum(low, np.maximum(lowest, low - stray))
+    high = np.maximum(high, np.minimum(highest, high + stray))
+    return (*low, *high)
 
 
 def held_seat(rec: Any) -> tuple[float, float] | None:

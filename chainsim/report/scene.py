@@ -10,12 +10,12 @@ from chainsim.report.moments import is_lost, loss_time, marks
 from chainsim.report.parts import (
     carrier_parts,
     held_seat,
-    highest_tension,
     n_slots,
     sampled,
     scalar,
     sprocket_parts,
     standing_parts,
+    usual_tension,
     view_box,
 )
 from chainsim.report.playback import (
@@ -147,7 +147,7 @@ def build_scene(rec: Any, findings: list) -> tuple[dict, str]:
         "standing": standing,
         "lost": {str(b.number): loss_time(rec, b) for b in rec.balls if is_lost(b.fate)},
         "tension": {
-            "top": float(tension_edges(highest_tension(rec)[0])[-1]),
+            "top": float(tension_edges(usual_tension(rec))[-1]),
             "colors": TENSION_COLORS,
             "widths": TENSION_WIDTHS,
         },

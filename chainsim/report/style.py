@@ -117,7 +117,7 @@ def tension_edges(highest: float) -> np.ndarray:
     Parameters
     ----------
     highest : float
-        Highest tension of any link in it [N].
+        Tension that the classes have to reach [N].
 
     Returns
     -------
@@ -146,6 +146,21 @@ def round_up(value: float) -> float:
         if value <= step * power * (1.0 + 1e-9):
             return float(step * power)
     return float(10.0 * power)
+
+
+def tension_text(edges: np.ndarray, index: int) -> str:
+    """Return what a key says of a tension class; the last one takes in all that is higher.
+
+    Parameters
+    ----------
+    edges : ndarray, shape (n_classes + 1,)
+        From `tension_edges` [N].
+    index : int
+        Which class, from 0 [dimensionless].
+    """
+    if index == len(edges) - 2:
+        return f"over {edges[index]:.3g} N"
+    return f"{edges[index]:.3g} to {edges[index + 1]:.3g} N"
 
 
 def tension_class(tension: np.ndarray, edges: np.ndarray) -> np.ndarray:

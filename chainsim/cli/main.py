@@ -1,0 +1,51 @@
+"""The command `chainsim`: its subcommands, and what its exit status means."""
+
+from __future__ import annotations
+
+import sys
+
+import click
+
+from chainsim import __version__
+from chainsim.cli.check import check
+from chainsim.cli.compare import compare
+from chainsim.cli.limit import limit
+from chainsim.cli.new import new
+from chainsim.cli.ready import ready
+from chainsim.cli.report import report
+from chainsim.cli.run import run
+from chainsim.cli.sweep import sweep
+
+
+class _InOrder(click.Group):
+    """A group that lists its commands in the order in which they are used."""
+
+    def list_commands(self, ctx: click.Context) -> list[str]:
+        return list(self.commands)
+
+
+@click.group(
+    cls=_InOrder,
+    context_settings={"help_option_names": ["-h", "--help"], "max_content_width": 100},
+    epilog="Exit status: 0 every judged finding holds or is close, 1 a finding fails, "
+    "2 the input or the call is wrong, 3 the run could not be completed, 130 interrupted.",
+)
+@click.version_option(__version__, prog_name="chainsim")
+def commands() -> None:
+    """Simulate chain lifts for ball machines.
+
+    A lift is described in a scenario file. Start with `chainsim new lift.toml`, look at it with
+    `chainsim check lift.toml`, prove it in motion with `chainsim run lift.toml`.
+    """
+
+
+for _command in (new, check, run, report, compare, sweep, limit, ready):
+    commands.add_command(_command)
+
+
+def main() -> None:
+    """Run the command line; a character that the terminal cannot show becomes a question mark."""
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):
+            stream.reconfigure(errors="replace")
+    commands(prog_name="chainsim")

@@ -1,0 +1,182 @@
+"""`chainsim run`: simulate, judge, record, report."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import Any
+
+import click
+
+from chainsim.cli.findings import run_data, show_verdict, status_of
+from chainsim.cli.frame import (
+    HOLDS,
+    command,
+    explained,
+    force_option,
+    json_option,
+    out_option,
+    print_json,
+    set_option,
+    strict_option,
+    tell,
+)
+from chainsim.cli.screen import say, show, shown_path, tell_remarks
+from chainsim.errors import STOPPED_BY_USER, CallError, ChainsimError, Interrupted
+
+FOLDER = "out"
+"""Where recordings and pages go."""
+
+
+@command("run", short_help="Simulate lifts, judge them, record and report.")
+@click.argument("files", nargs=-1, type=click.Path(), metavar="FILE…", required=True)
+@set_option
+@out_option(FOLDER, "Where the recording and the report page go.")
+@click.option("--unsure", is_flag=True, help="Repeat it at the ends of the assumed values' ranges.")
+@click.option("--verify-step", is_flag=True, help="Repeat it at half and quarter of the step.")
+@click.option(
+    "--situations",
+    metavar="NAMES",
+    help='"all" for the proving run, or names of situations between commas.',
+)
+@click.option("--no-report", is_flag=True, help="Write no report page.")
+@click.option("--quiet", is_flag=True, help="Say nothing on standard error but errors.")
+@force_option
+@json_option
+@strict_option
+def run(
+    files: tuple[str, ...],
+    changes: tuple[str, ...],
+    out: str,
+    as_json: bool,
+    strict: bool,
+    **options: Any,
+) -> int:
+    """Simulate scenarios and judge them.
+
+    Each run ends in a verdict, its findings, a recording (DIR/<name>.lift.h5) and a report page.
+    Ctrl-C stops a run and keeps what there is.
+    """
+    folder = Path(out)
+    _prepare(folder)
+    answers: list[tuple[int, dict[str, Any]]] = []
+    for file in files:
+        answers.append(_answer(file, changes, folder, as_json, strict, options))
+        if answers[-1][0] == STOPPED_BY_USER:
+            break
+    if as_json:
+        data = [answer for _, answer in answers]
+        print_json(data[0] if len(files) == 1 else data)
+    return max(status for status, _ in answers)
+
+
+def _prepare(folder: Path) -> None:
+    """Find out before the run, not after it, that nothing can be written."""
+    try:
+        folder.mkdir(parents=True, exist_ok=True)
+        probe = folder / ".chainsim-probe"
+        probe.touch()
+        probe.unlink()
+    except OSError as error:
+        raise CallError(f"--out {folder}: cannot be written to: {error.strerror}") from error
+
+
+def _answer(
+    file: str,
+    changes: tuple[str, ...],
+    folder: Path,
+    as_json: bool,
+    strict: bool,
+    options: dict[str, Any],
+) -> tuple[int, dict[str, Any]]:
+    """Status and plain data of one file; for people it is printed at once."""
+    from chainsim.scenario import read_scenario
+
+    try:
+        scenario = read_scenario(file, changes)
+        if not options["quiet"]:
+            tell_remarks(file, scenario.remarks)
+        rec = simulated(scenario, folder, options["force"], options["quiet"])
+        return _judged(file, scenario, rec, as_json, strict, options)
+    except (ChainsimError, OSError, KeyboardInterrupt) as error:
+        told = explained(error)
+        tell(told)
+        return told.status, {"file": file, **told.data()}
+
+
+def simulated(scenario: Any, folder: Path, force: bool, quiet: bool) -> Any:
+    """Run a scenario, its progress on standard error, and return the recording."""
+    from chainsim.cli.progress import RunProgress, will_compile
+    from chainsim.run import run as simulate
+
+    path = folder / f"{scenario.stem}.lift.h5"
+    if quiet:
+        return simulate(scenario, path, force=force)
+    if will_compile():
+        say("compiling the kernels for this machine: once, about half a minute")
+    progress = RunProgress(scenario.stem)
+    try:
+        return simulate(scenario, path, force=force, progress=progress)
+    finally:
+        progress.end()
+
+
+def _judged(
+    file: str, scenario: Any, rec: Any, as_json: bool, strict: bool, options: dict[str, Any]
+) -> tuple[int, dict[str, Any]]:
+    """Print a run and write its page; then do the studies that were asked for."""
+    page = None if options["no_report"] else _page(rec)
+    status = status_of(rec.findings, scenario.remarks, strict)
+    data = {"file": file, **run_data(rec, scenario.remarks)}
+    data["report"] = str(page) if page else None
+    if not as_json:
+        show_verdict(rec)
+        show_places(rec, page)
+    if not rec.complete:
+        say(f"{file}: stopped before its end ({rec.stop_reason}); what there is was kept")
+        return STOPPED_BY_USER, data
+    return max(status, _studies(scenario, data, as_json, options)), data
+
+
+def _page(rec: Any) -> Path | None:
+    """Write the report page beside the recording, where there is enough to show."""
+    from chainsim.errors import RecordingError
+    from chainsim.report import render_report
+
+    path = rec.path.with_name(rec.path.name.removesuffix(".lift.h5") + ".html")
+    try:
+        return render_report(rec, path).absolute()
+    except RecordingError as error:
+        say(f"no report page: {error}")
+        return None
+
+
+def show_places(rec: Any, page: Path | None) -> None:
+    """Print where the recording and the page are."""
+    show(f"\nRecording  {shown_path(rec.path)}")
+    if page is not None:
+        show(f"Report     {shown_path(page)}  (motion, plots, cautions; what the model cannot see)")
+
+
+def _studies(scenario: Any, data: dict[str, Any], as_json: bool, options: dict[str, Any]) -> int:
+    """Repeat the run as asked; add the answers to the data, and return the worst status."""
+    from chainsim.cli import repeats
+
+    status = HOLDS
+    chosen = (
+        ("verify_step", options["verify_step"], repeats.step_check),
+        ("unsure", options["unsure"], repeats.unsure_values),
+        ("proving", options["situations"], repeats.proving_run),
+    )
+    for name, asked, study in chosen:
+        if not asked:
+            continue
+        try:
+            found = study(scenario, asked, options["quiet"])
+        except Interrupted as error:
+            tell(explained(error))
+            return STOPPED_BY_USER
+        data[name] = found.data
+        status = max(status, found.status)
+        if not as_json:
+            show("", found.table)
+    return status

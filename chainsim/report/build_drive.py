@@ -1,0 +1,256 @@
+"""The drive on the build sheet: what the motor has to give, its margins, its direction."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+
+from chainsim import closed_forms as cf
+from chainsim.analysis.advice import STALL_RESERVE
+from chainsim.analysis.drive import droop, duty
+from chainsim.analysis.sized import sprocket_torque, starting_pull
+from chainsim.analysis.stops import run_back
+from chainsim.report.build_case import Case, steady_mean
+from chainsim.report.build_line import (
+    CLOSED,
+    CLOSED_ONLY,
+    PRACTICE,
+    SIMULATED,
+    STATED,
+    UNKNOWN,
+    Line,
+    Part,
+    ran_or_reckoned,
+)
+
+CONTINUOUS_SHARE = 0.8
+"""Share of its continuous rating that a motor runs at (dimensionless); common practice, no
+source."""
+
+
+def drive_part(case: Case) -> Part:
+    """Write the duty of the motor with its margins.
+
+    Parameters
+    ----------
+    case : Case
+        The lift.
+    """
+    motor = case.scenario.drive.motor
+    text = (
+        "What was calculated with is a set speed, not a motor: order one that gives at least this."
+        if motor is None
+        else "Torques and speeds at the driven sprocket, unless the line says motor."
+    )
+    lines = list(_load_lines(case))
+    lines += _motor_lines(case) if motor is not None else _order_lines(case)
+    lines.append(_pull_line(case))
+    return Part("drive", "Motor duty", text, tuple(lines))
+
+
+def running_torque(case: Case) -> tuple[float | None, float | None]:
+    """Return the mean torque on the driven sprocket in steady running.
+
+    Parameters
+    ----------
+    case : Case
+        The lift.
+
+    Returns
+    -------
+    simulated, closed : float or None
+        What the run gave and what the closed form says [N m].
+    """
+    load = case.simulated(duty)
+    closed = sprocket_torque(case.sized) if case.sized else None
+    return (abs(load.mean_torque) if load else None), closed
+
+
+def _load_lines(case: Case) -> Iterator[Line]:
+    load, (mean, closed) = case.simulated(duty), running_torque(case)
+    radius = case.lift.wheels[case.driven].radius
+    rate = case.simulated(lambda s: abs(steady_mean(s, "sprockets/rate", case.driven)))
+    yield Line("driven sprocket", case.lift.wheels[case.driven].name)
+    line = Line("speed of the driven sprocket", None, "rad s-1", note="mean over a turn")
+    yield ran_or_reckoned(line, rate, case.rate)
+    yield ran_or_reckoned(Line("mean torque on it, running", None, "N m"), mean, closed)
+    yield ran_or_reckoned(Line("r.m.s. torque, running", None, "N m"), load and load.rms_torque)
+    start = (starting_pull(case.sized) * radius + (closed or 0.0)) if case.sized else None
+    note = "samples of the whole run" if load else "running and starting together"
+    line = Line("peak torque", None, "N m", note=note)
+    yield ran_or_reckoned(line, load and load.peak_torque, start)
+    power = closed * case.rate if closed is not None else None
+    line = Line("mechanical power, running", None, "W")
+    yield ran_or_reckoned(line, load and load.mean_power, power)
+
+
+def _order_lines(case: Case) -> Iterator[Line]:
+    """What to order where the scenario has no motor."""
+    load, (mean, closed) = case.simulated(duty), running_torque(case)
+    torque = load.rms_torque if load else closed
+    if torque is None or not math.isfinite(torque):
+        return
+    source = SIMULATED if load else CLOSED_ONLY
+    yield Line(
+        "gearmotor: continuous torque of at least",
+        torque / CONTINUOUS_SHARE,
+        "N m",
+        source,
+        f"running at most at {100 * CONTINUOUS_SHARE:.0f} % of its rating; {PRACTICE}",
+    )
+    stall = STALL_RESERVE * (mean if mean is not None else closed or 0.0)
+    peak = load.peak_torque / CONTINUOUS_SHARE if load else 0.0
+    yield Line(
+        "gearmotor: stall torque of at least",
+        max(stall, peak),
+        "N m",
+        source,
+        f"{STALL_RESERVE:g} times the running torque, and above the peak; {PRACTICE}",
+    )
+    rate = case.rate
+    yield Line(
+        "gearmotor: speed under that load",
+        rate,
+        "rad s-1",
+        STATED,
+        "not the speed without load; set it by the supply",
+        0.95 * rate,
+        1.05 * rate,
+    )
+
+
+def _pull_line(case: Case) -> Line:
+    """Torque at which a stalled drive reaches the strength of the links."""
+    radius = case.lift.wheels[case.driven].radius
+    most = case.sized.running.most if case.sized else 0.0
+    spare = (case.scenario.chain.allowable_tension - most) * radius
+    motor = case.scenario.drive.motor
+    stall = case.scenario.drive.max_torque
+    if motor is not None:
+        stall = motor.stall_torque * motor.gear_ratio * motor.gear_efficiency
+    note = (
+        "above it a jam loads the links beyond what they are allowed: limit it by clutch or supply"
+    )
+    if stall is not None:
+        word = "does not reach it" if stall <= spare else "EXCEEDS it"
+        note = f"this drive stalls at {1e3 * stall:.0f} mN m and {word}; {note}"
+    return Line("torque limit of the drive, at most", spare, "N m", CLOSED, note, None, spare)
+
+
+def _motor_lines(case: Case) -> Iterator[Line]:
+    motor, (mean, closed) = case.scenario.drive.motor, running_torque(case)
+    torque = mean if mean is not None else closed
+    if torque is None:
+        return
+    source = SIMULATED if mean is not None else CLOSED_ONLY
+    load = torque / (motor.gear_ratio * motor.gear_efficiency)
+    yield Line("motor: supply", motor.supply, "V")
+    yield Line("motor: gear ratio", motor.gear_ratio, "1")
+    yield Line("motor: speed without load", motor.no_load_speed, "rad s-1")
+    yield Line("motor: torque, running", load, "N m", source, "through gear ratio and efficiency")
+    if motor.continuous_torque is not None:
+        share = load / motor.continuous_torque
+        yield Line("motor: share of its continuous torque", share, "share", source, "", None, 1.0)
+    share = load / motor.stall_torque
+    yield Line(
+        "motor: share of its stall torque", share, "share", source, "", None, 1 / STALL_RESERVE
+    )
+    speed = cf.motor_speed(load, motor.no_load_speed, motor.stall_torque)
+    ran = case.simulated(lambda s: abs(steady_mean(s, "sprockets/rate", case.driven)))
+    line = Line("motor: speed, running", None, "rad s-1")
+    yield ran_or_reckoned(line, ran and ran * motor.gear_ratio, speed)
+    slow = case.simulated(droop)
+    line = Line("motor: loss of speed under load", None, "share")
+    yield ran_or_reckoned(line, slow and slow.share, 1.0 - speed / motor.no_load_speed)
+    yield from _heat_lines(case, load, speed)
+
+
+def _heat_lines(case: Case, load: float, speed: float) -> Iterator[Line]:
+    """Current, and the power that stays in the motor as heat."""
+    motor = case.scenario.drive.motor
+    closed = cf.motor_current(load, motor.stall_torque, motor.no_load_current, motor.stall_current)
+    ran = case.simulated(lambda s: steady_mean(s, "drive/current"))
+    yield ran_or_reckoned(Line("motor: current, running", None, "A"), ran, closed)
+    yield Line("motor: current when stalled", motor.stall_current, "A", STATED, "fuse below it")
+    has_run = ran is not None and math.isfinite(ran)
+    heat = motor.supply * (ran if has_run else closed) - load * speed
+    yield Line(
+        "motor: heat",
+        heat,
+        "W",
+        SIMULATED if has_run else CLOSED_ONLY,
+        "supply power less shaft power at the full supply voltage",
+    )
+
+
+def direction_part(case: Case) -> Part:
+    """Write the direction of running and what a reversed or missing supply does.
+
+    Parameters
+    ----------
+    case : Case
+        The lift.
+    """
+    view = "behind" if case.is_from_back else "the front"
+    wheel = case.scenario.sprocket[case.driven]
+    is_ccw = (wheel.side == "inside") != case.is_from_back
+    rising = [strand.name for strand in case.lift.strands if strand.carrying]
+    lines = [
+        Line(
+            f"the driven sprocket turns, seen from {view}",
+            "counterclockwise" if is_ccw else "clockwise",
+            note="mark it with an arrow on the lift; check it with the chain off",
+        ),
+        Line("strand that rises with the balls", ", ".join(rising) or "none"),
+        Line("the chain meets the sprockets in this order", " → ".join(case.lift.wheel_names)),
+        *_supply_lines(case),
+    ]
+    text = "An arrow on the lift and one on the motor save the first start from being the test."
+    return Part("direction", "Direction of running, and a reversed supply", text, tuple(lines))
+
+
+def reversed_text(drive) -> str:
+    """Say what a drive does when its supply is reversed.
+
+    Parameters
+    ----------
+    drive : Drive
+        The drive's table of the scenario.
+
+    Returns
+    -------
+    str
+        One sentence, from how it is built, not from a run.
+    """
+    if drive.polarity == "rectified":
+        return "a rectifier keeps it turning forward"
+    if drive.backstop:
+        return "the backstop holds the sprocket: it stands, and the motor is stalled"
+    if drive.overrunning:
+        return "the clutch lets go: the motor turns, the sprocket is not driven"
+    return "it RUNS BACKWARD, and carries balls down: make the plug so that it cannot be turned"
+
+
+def _supply_lines(case: Case) -> Iterator[Line]:
+    drive = case.scenario.drive
+    has_reversed = "supply reversed" in case.situations_run
+    yield Line(
+        "with the supply reversed",
+        reversed_text(drive),
+        source=SIMULATED if has_reversed else UNKNOWN,
+        note="" if has_reversed else "from how it is built; try it without balls first",
+    )
+    has_cut = "supply cut" in case.situations_run
+    back = case.simulated(run_back) if has_cut else None
+    line = Line("run-back after a cut of the supply", None, "m", note=_cut_text(drive))
+    yield ran_or_reckoned(line, back.distance if back else None)
+
+
+def _cut_text(drive) -> str:
+    if drive.backstop:
+        return "a backstop holds it"
+    if drive.motor is not None and not drive.motor.back_drivable:
+        return "the gearing holds it"
+    if drive.motor is None:
+        return "a set speed says nothing of it: take a gear that locks, or fit a backstop"
+    return "the load can turn this motor back: fit a backstop"

@@ -9,6 +9,7 @@ from typing import Any
 
 import click
 
+from chainsim.cli.files import free_name, writable_folder
 from chainsim.cli.frame import (
     HOLDS,
     command,
@@ -44,7 +45,8 @@ def compare(
         found = set_side_by_side(runs)
         page = None
         if not no_report:
-            page = render_comparison(found, _page(Path(out), force)).absolute()
+            place = free_name(writable_folder(out), PAGE, force)
+            page = render_comparison(found, place).absolute()
         if as_json:
             print_json(_data(found, page))
             return HOLDS
@@ -52,13 +54,6 @@ def compare(
         if page is not None:
             show(f"\nReport  {shown_path(page)}")
     return HOLDS
-
-
-def _page(folder: Path, force: bool) -> Path:
-    from chainsim.recording.places import free_path
-
-    folder.mkdir(parents=True, exist_ok=True)
-    return free_path(folder / PAGE, force)
 
 
 def _data(found: Any, page: Path | None) -> dict[str, Any]:

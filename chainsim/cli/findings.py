@@ -18,6 +18,10 @@ KEYS = (
 """What is told of a finding in machine-readable output."""
 
 
+DOES_NOT_APPLY = "does not apply"
+NOT_ENOUGH_DATA = "not enough data"
+
+
 def status_of(findings: Sequence[Any], remarks: Sequence[Any], strict: bool) -> int:
     """Return the exit status that findings ask for.
 
@@ -37,7 +41,7 @@ def status_of(findings: Sequence[Any], remarks: Sequence[Any], strict: bool) -> 
     """
     if any(finding.outcome == "fails" for finding in findings):
         return FAILS
-    missing = any(finding.why == "not enough data" for finding in findings)
+    missing = any(finding.why == NOT_ENOUGH_DATA for finding in findings)
     return FAILS if strict and (missing or remarks) else HOLDS
 
 
@@ -73,8 +77,7 @@ def show_verdict(rec: Any) -> None:
 
     found, findings = situations(rec), findings_of(rec)
     show(heading(readable(verdict(findings, found))), "", findings_table(findings))
-    for line in notes(findings):
-        show(line)
+    show("", notes_table(findings))
     show(
         f"\nSituations run: {', '.join(found.run) or 'none'}",
         f"Not run: {', '.join(found.not_run) or 'none'}",
@@ -121,14 +124,25 @@ def _cells(finding: Any) -> Iterator[Any]:
         yield Text.assemble(signed(finding.margin, unit), (scale, "dim"))
 
 
+def notes_table(findings: Sequence[Any]) -> Any:
+    """Return what to know about findings that fail, are close, or were not judged."""
+    from rich.table import Table
+
+    table = Table.grid(padding=(0, 1))
+    for line in notes(findings):
+        table.add_row("-", line)
+    return table
+
+
 def notes(findings: Sequence[Any]) -> Iterator[str]:
-    """Yield what to know about findings that fail, are close, or were not judged."""
+    """Yield one line for each finding that needs it; those that do not apply share one."""
     from chainsim.report.text import readable
 
     for outcome in ("fails", "close", "not judged"):
         for finding in findings:
-            if finding.outcome != outcome:
-                continue
-            said = "; ".join(part for part in (finding.why, readable(finding.note or "")) if part)
-            if said:
-                yield f"- {finding.title}, {outcome}: {said}"
+            if finding.outcome == outcome and finding.why != DOES_NOT_APPLY:
+                said = [part for part in (finding.why, readable(finding.note or "")) if part]
+                yield f"{finding.title}, {outcome}{': ' if said else ''}{'; '.join(said)}"
+    apart = [finding.title for finding in findings if finding.why == DOES_NOT_APPLY]
+    if apart:
+        yield f"does not apply, or no limit is set (the page says which): {', '.join(apart)}"

@@ -7,7 +7,7 @@ import functools
 import json
 import math
 import os
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from typing import Any, NamedTuple
 
 import click
@@ -78,6 +78,41 @@ def command(name: str, **settings: Any) -> Callable[[Callable[..., int]], click.
         return click.command(name, **settings)(call)
 
     return decorate
+
+
+def answer_each(
+    names: Sequence[str], as_json: bool, answer: Callable[[str], tuple[int, dict[str, Any]]]
+) -> int:
+    """Answer for each of several files; a fault of one does not keep the others from theirs.
+
+    Parameters
+    ----------
+    names : sequence of str
+        The files.
+    as_json : bool
+        Whether to print their data: one object, or an array where there are several.
+    answer : callable
+        Takes a name; returns exit status and plain data.
+
+    Returns
+    -------
+    int
+        The worst exit status (dimensionless).
+    """
+    answers: list[tuple[int, dict[str, Any]]] = []
+    for name in names:
+        try:
+            answers.append(answer(name))
+        except BaseException as error:
+            told = explained(error)
+            tell(told)
+            answers.append((told.status, {"file": name, **told.data()}))
+        if answers[-1][0] == STOPPED_BY_USER:
+            break
+    if as_json:
+        data = [found for _, found in answers]
+        print_json(data[0] if len(names) == 1 else data)
+    return max(status for status, _ in answers)
 
 
 def explained(error: BaseException) -> Told:

@@ -7,21 +7,17 @@ from typing import Any
 
 import click
 
+from chainsim.cli.files import free_name, stem_of, writable_folder
 from chainsim.cli.findings import run_data, show_verdict, status_of
 from chainsim.cli.frame import (
+    answer_each,
     command,
-    explained,
     force_option,
     json_option,
     out_option,
-    print_json,
     strict_option,
-    tell,
 )
 from chainsim.cli.screen import show, shown_path
-from chainsim.errors import ChainsimError
-
-SUFFIX = ".lift.h5"
 
 
 @command("report", short_help="Write the report page of recordings, plots, exports.")
@@ -36,70 +32,44 @@ SUFFIX = ".lift.h5"
 @strict_option
 def report(recordings: tuple[str, ...], as_json: bool, strict: bool, **options: Any) -> int:
     """Write the report page of recordings, and what else is asked for."""
-    options["apart"] = len(recordings) > 1
-    answers = [_answer(name, as_json, strict, options) for name in recordings]
-    if as_json:
-        data = [answer for _, answer in answers]
-        print_json(data[0] if len(recordings) == 1 else data)
-    return max(status for status, _ in answers)
-
-
-def _answer(
-    name: str, as_json: bool, strict: bool, options: dict[str, Any]
-) -> tuple[int, dict[str, Any]]:
-    """Status and plain data of one recording; for people it is printed at once."""
     from chainsim.recording import open_recording
     from chainsim.report.text import findings_of
 
-    try:
+    options["apart"] = len(recordings) > 1
+
+    def answer(name: str) -> tuple[int, dict[str, Any]]:
         with open_recording(name) as rec:
             files = _write(rec, options)
             remarks = rec.scenario.remarks
             if not as_json:
                 show_verdict(rec)
-                show("")
-                for what, paths in files.items():
-                    show(f"{what:10} {_places(paths)}")
-            data = run_data(rec, remarks)
-            data |= {
-                what: [str(path.absolute()) for path in paths] for what, paths in files.items()
-            }
+                show("", *(f"{what:10} {shown_path(path)}" for what, path in files.items()))
+            data = {"file": name, **run_data(rec, remarks)}
+            data |= {what: str(path.absolute()) for what, path in files.items()}
             return status_of(findings_of(rec), remarks, strict), data
-    except (ChainsimError, OSError) as error:
-        told = explained(error)
-        tell(told)
-        return told.status, {"recording": name, **told.data()}
+
+    return answer_each(recordings, as_json, answer)
 
 
-def _places(paths: list[Path]) -> str:
-    if len(paths) == 1:
-        return shown_path(paths[0])
-    return f"{len(paths)} files in {shown_path(paths[0].parent)}"
-
-
-def _write(rec: Any, options: dict[str, Any]) -> dict[str, list[Path]]:
-    """Write everything that was asked for; what, and the files of each."""
+def _write(rec: Any, options: dict[str, Any]) -> dict[str, Path]:
+    """Write everything that was asked for; what, and its file or folder."""
     from chainsim.report import animate, render_report, write_plots
 
-    stem = rec.path.name.removesuffix(SUFFIX)
-    folder = Path(options["out"]) if options["out"] else rec.path.parent
-    folder.mkdir(parents=True, exist_ok=True)
-
-    def free(place: Path, ending: str) -> Path:
-        from chainsim.recording.places import free_path
-
-        return free_path(place / f"{stem}{ending}", options["force"])
-
-    written = {"report": [render_report(rec, free(folder, ".html"))]}
+    stem, force = stem_of(rec), options["force"]
     own = stem if options["apart"] else "."  # of several recordings, each has its own folder
+    folder = writable_folder(options["out"] or rec.path.parent)
+    written = {"report": render_report(rec, free_name(folder, f"{stem}.html", force))}
     if options["plots"]:
-        written["plots"] = write_plots(rec, Path(options["plots"]) / own)
+        written["plots"] = writable_folder(Path(options["plots"]) / own)
+        write_plots(rec, written["plots"])
     if options["csv"]:
-        written["csv"] = rec.export_csv(Path(options["csv"]) / own)
+        written["csv"] = writable_folder(Path(options["csv"]) / own)
+        rec.export_csv(written["csv"])
     if options["mat"]:
-        place = Path(options["mat"])
-        place.mkdir(parents=True, exist_ok=True)
-        written["mat"] = [rec.export_mat(free(place, ".mat"))]
+        place = free_name(writable_folder(options["mat"]), f"{stem}.mat", force)
+        written["mat"] = rec.export_mat(place)
     if options["animation"]:
-        written["animation"] = [animate(rec, free(folder, f".{options['animation']}"))]
+        written["animation"] = animate(
+            rec, free_name(folder, f"{stem}.{options['animation']}", force)
+        )
     return written

@@ -7,21 +7,22 @@ from typing import Any
 
 import click
 
+from chainsim.cli.files import SUFFIX, free_name, stem_of, writable_folder
 from chainsim.cli.findings import run_data, show_verdict, status_of
 from chainsim.cli.frame import (
     HOLDS,
+    answer_each,
     command,
     explained,
     force_option,
     json_option,
     out_option,
-    print_json,
     set_option,
     strict_option,
     tell,
 )
 from chainsim.cli.screen import say, show, shown_path, tell_remarks
-from chainsim.errors import STOPPED_BY_USER, CallError, ChainsimError, Interrupted
+from chainsim.errors import STOPPED_BY_USER, Interrupted
 
 FOLDER = "out"
 """Where recordings and pages go."""
@@ -56,51 +57,18 @@ def run(
     Each run ends in a verdict, its findings, a recording (DIR/<name>.lift.h5) and a report page.
     Ctrl-C stops a run and keeps what there is.
     """
-    folder = Path(out)
-    _prepare(folder)
-    answers: list[tuple[int, dict[str, Any]]] = []
-    for file in files:
-        answers.append(_answer(file, changes, folder, as_json, strict, options))
-        if answers[-1][0] == STOPPED_BY_USER:
-            break
-    if as_json:
-        data = [answer for _, answer in answers]
-        print_json(data[0] if len(files) == 1 else data)
-    return max(status for status, _ in answers)
-
-
-def _prepare(folder: Path) -> None:
-    """Find out before the run, not after it, that nothing can be written."""
-    try:
-        folder.mkdir(parents=True, exist_ok=True)
-        probe = folder / ".chainsim-probe"
-        probe.touch()
-        probe.unlink()
-    except OSError as error:
-        raise CallError(f"--out {folder}: cannot be written to: {error.strerror}") from error
-
-
-def _answer(
-    file: str,
-    changes: tuple[str, ...],
-    folder: Path,
-    as_json: bool,
-    strict: bool,
-    options: dict[str, Any],
-) -> tuple[int, dict[str, Any]]:
-    """Status and plain data of one file; for people it is printed at once."""
     from chainsim.scenario import read_scenario
 
-    try:
+    folder = writable_folder(out)
+
+    def answer(file: str) -> tuple[int, dict[str, Any]]:
         scenario = read_scenario(file, changes)
         if not options["quiet"]:
             tell_remarks(file, scenario.remarks)
         rec = simulated(scenario, folder, options["force"], options["quiet"])
         return _judged(file, scenario, rec, as_json, strict, options)
-    except (ChainsimError, OSError, KeyboardInterrupt) as error:
-        told = explained(error)
-        tell(told)
-        return told.status, {"file": file, **told.data()}
+
+    return answer_each(files, as_json, answer)
 
 
 def simulated(scenario: Any, folder: Path, force: bool, quiet: bool) -> Any:
@@ -108,7 +76,7 @@ def simulated(scenario: Any, folder: Path, force: bool, quiet: bool) -> Any:
     from chainsim.cli.progress import RunProgress, will_compile
     from chainsim.run import run as simulate
 
-    path = folder / f"{scenario.stem}.lift.h5"
+    path = folder / f"{scenario.stem}{SUFFIX}"
     if quiet:
         return simulate(scenario, path, force=force)
     if will_compile():
@@ -124,7 +92,7 @@ def _judged(
     file: str, scenario: Any, rec: Any, as_json: bool, strict: bool, options: dict[str, Any]
 ) -> tuple[int, dict[str, Any]]:
     """Print a run and write its page; then do the studies that were asked for."""
-    page = None if options["no_report"] else _page(rec)
+    page = None if options["no_report"] else _page(rec, options["force"])
     status = status_of(rec.findings, scenario.remarks, strict)
     data = {"file": file, **run_data(rec, scenario.remarks)}
     data["report"] = str(page) if page else None
@@ -137,13 +105,13 @@ def _judged(
     return max(status, _studies(scenario, data, as_json, options)), data
 
 
-def _page(rec: Any) -> Path | None:
+def _page(rec: Any, force: bool) -> Path | None:
     """Write the report page beside the recording, where there is enough to show."""
     from chainsim.errors import RecordingError
     from chainsim.report import render_report
 
-    path = rec.path.with_name(rec.path.name.removesuffix(".lift.h5") + ".html")
     try:
+        path = free_name(rec.path.parent, f"{stem_of(rec)}.html", force)
         return render_report(rec, path).absolute()
     except RecordingError as error:
         say(f"no report page: {error}")

@@ -17,16 +17,18 @@ from markupsafe import Markup
 from chainsim import __version__
 from chainsim.findings import verdict
 from chainsim.findings.situations import Situations
+from chainsim.report.build_assembly import assembly_steps
+from chainsim.report.build_balls import balls_part
 from chainsim.report.build_case import Case, case_of
 from chainsim.report.build_cautions import sheet_cautions
-from chainsim.report.build_chain import balls_part, carriers_part, chain_part
+from chainsim.report.build_chain import carriers_part, chain_part
 from chainsim.report.build_checks import checks_part
 from chainsim.report.build_drive import direction_part, drive_part
 from chainsim.report.build_line import Part
-from chainsim.report.build_order import assembly_steps, order_part
+from chainsim.report.build_order import order_part
+from chainsim.report.build_setting import takeup_part
 from chainsim.report.build_shaft import shaft_part
 from chainsim.report.build_stamps import stamps
-from chainsim.report.build_takeup import takeup_part
 from chainsim.report.build_tolerances import tolerances_part
 from chainsim.report.build_view import part_view
 from chainsim.report.build_wear import wear_part

@@ -12,7 +12,7 @@ import numpy as np
 
 from chainsim.analysis.sized import Sized, size_up
 from chainsim.analysis.survey import Survey, survey
-from chainsim.errors import ChainsimError
+from chainsim.errors import ChainsimError, LayoutError
 from chainsim.findings import situations
 from chainsim.model.lift import Lift, build_lift
 from chainsim.model.tangents import route
@@ -49,6 +49,19 @@ class Case:
     findings: tuple[Any, ...]
     situations_run: tuple[str, ...]
     situations_not_run: tuple[str, ...]
+
+    @property
+    def closed(self) -> Sized:
+        """Its closed forms.
+
+        Raises
+        ------
+        LayoutError
+            If the layout has none; `simulated` and `reckoned` take it for a missing value.
+        """
+        if self.sized is None:
+            raise LayoutError("a loop that hangs on a single sprocket has no closed form")
+        return self.sized
 
     @property
     def is_from_back(self) -> bool:
@@ -90,6 +103,38 @@ class Case:
             To the right, seen as the sheet's view says [m].
         """
         return -x + 0.0 if self.is_from_back else x
+
+    def extreme(self, name: str) -> float | None:
+        """Return an extreme over every inner step of the run.
+
+        Parameters
+        ----------
+        name : str
+            Its name in the recording, such as ``"link_tension"``.
+
+        Returns
+        -------
+        float or None
+            In its unit; None where it was not kept.
+        """
+        found = self.run.extremes.get(name) if self.run is not None else None
+        return float(found.value) if found is not None else None
+
+    def mode(self, kind: str) -> float | None:
+        """Return the frequency of a mode of the lift at rest.
+
+        Parameters
+        ----------
+        kind : str
+            Such as ``"take-up tail"``.
+
+        Returns
+        -------
+        float or None
+            The lowest of its kind [Hz]; None where it was not worked out.
+        """
+        rows = self.run.rec.modes if self.run is not None else ()
+        return min((float(row.frequency) for row in rows if row.kind == kind), default=None)
 
     def simulated(self, measure: Callable[[Survey], Any]) -> Any:
         """Take a measure from the run.

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 
 from chainsim.analysis.sized import starting_pull
 from chainsim.report.build_case import Case
+from chainsim.report.build_line import place_text
 from chainsim.report.build_takeup import movable_axles
 from chainsim.report.cautions import Caution, cautions, stall_torque
 from chainsim.report.text import quantity
@@ -37,9 +38,9 @@ def _without_run(case: Case) -> Iterator[Caution]:
     yield _nips(case)
     yield Caution(
         "Restart and reach",
-        "A motor may start without warning when its supply returns; switch off and secure it before "
-        f"reaching in. The carriers move at {quantity(case.speed, 'm s-1')}; keep all of it beyond a "
-        "visitor's reach or behind a guard.",
+        "A motor may start without warning when its supply returns; switch off and secure it "
+        f"before reaching in. The carriers move at {quantity(case.speed, 'm s-1')}; keep all of it "
+        "beyond a visitor's reach or behind a guard.",
     )
 
 
@@ -71,14 +72,14 @@ def _hanging(case: Case) -> Iterator[Caution]:
         if mount.stops is not None and mount.kind != "arm":
             drop = f"with {quantity(mount.stops[1] - mount.stops[0], 'm')} between its stops"
         parts.append(f"{quantity(mass, 'kg')} at {name}, {drop}")
-        if mount.kind == "spring":
+        if mount.kind == "spring" and mount.rate:
             stored = 0.5 * mount.set_force**2 / mount.rate
             parts.append(f"its spring holds {quantity(stored, 'J')}")
     if parts:
         yield Caution(
             "Hung masses and springs",
-            f"If the chain parts or is opened, what it carries falls: {'; '.join(parts)}. Support it "
-            "before working on the chain, and keep hands and feet from below it.",
+            f"If the chain parts or is opened, what it carries falls: {'; '.join(parts)}. Support "
+            "it before working on the chain, and keep hands and feet from below it.",
         )
 
 
@@ -86,7 +87,10 @@ def _pull(case: Case) -> Caution:
     torque, text = stall_torque(case.scenario.drive), ""
     radius = case.lift.wheels[case.driven].radius
     if torque is None:
-        text = "This scenario sets a speed and no largest torque: a jam is pulled until something gives"
+        text = (
+            "This scenario sets a speed and no largest torque, so that a jam is pulled until "
+            "something gives way"
+        )
     else:
         text = (
             f"At stall the drive gives {quantity(torque, 'N m')} at its sprocket, a pull of about "
@@ -105,8 +109,8 @@ def _nips(case: Case) -> Caution:
     for strand in case.lift.strands:
         x, y = case.lift.laid.wheel_center[strand.end]
         name = case.lift.wheel_names[strand.end]
-        where = f"near {1e3 * case.across(x) + 0.0:.0f}, {1e3 * y + 0.0:.0f} mm"
-        places.append(f"where strand {strand.name} meets sprocket {name} ({where})")
+        where = place_text(case.across(float(x)), float(y), 0)
+        places.append(f"where strand {strand.name} meets sprocket {name} (near {where})")
     return Caution(
         "Nip places",
         f"Running forward the chain draws in {'; '.join(places)}. Running in reverse it does so at "

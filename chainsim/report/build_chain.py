@@ -1,17 +1,16 @@
-"""The chain and its carriers on the build sheet: links, spares, places, the pocket to make."""
+"""Chain and carriers on the build sheet: links, spares, places, the pocket to make."""
 
 from __future__ import annotations
 
-import math
 from collections.abc import Iterator
 
 import numpy as np
 
 from chainsim.report.build_case import Case
-from chainsim.report.build_line import DRAWN, PRACTICE, Line, Part
+from chainsim.report.build_line import DRAWN, PRACTICE, STATED, UNKNOWN, Line, Part, place_text
 from chainsim.report.build_pocket import pocket_svg, swept_radius
 from chainsim.report.build_spares import spare_parts
-from chainsim.units import format_si
+from chainsim.scenario.schema_balls import Carriers, Pocket
 
 ORIGIN_TEXTS = {
     "given": "stated in the scenario",
@@ -20,21 +19,19 @@ ORIGIN_TEXTS = {
     "bench": "measured on the bench",
 }
 
+SIDE_PLAY = 1e-3
+"""Play of a ball across the plane in its pocket [m]; common practice, no source."""
+
 CHAIN_KEYS = (
-    ("pitch, pin to pin", "chain.pitch", "m", "length"),
-    (
-        "diameter of the rollers or pins that touch the teeth",
-        "chain.roller_diameter",
-        "m",
-        "length",
-    ),
-    ("mass of one link", "chain.link_mass", "kg", "mass"),
-    ("stiffness of one link, along the chain", "chain.link_stiffness", "N/m", "stiffness"),
-    ("tension a link must bear all day", "chain.allowable_tension", "N", "force"),
-    ("radius of the pin in its joint", "chain.joint.pin_radius", "m", "length"),
-    ("coefficient of friction in the joint", "chain.joint.friction", "1", ""),
+    ("pitch, pin to pin", "chain.pitch", "m"),
+    ("diameter of what lies in the seats, rollers or pins", "chain.roller_diameter", "m"),
+    ("mass of one link", "chain.link_mass", "kg"),
+    ("stiffness of one link, along the chain", "chain.link_stiffness", "N/m"),
+    ("tension a link must bear all day", "chain.allowable_tension", "N"),
+    ("radius of the pin in its joint", "chain.joint.pin_radius", "m"),
+    ("coefficient of friction in the joint", "chain.joint.friction", "1"),
 )
-"""Item, dotted key, unit on the sheet, kind of quantity of each property of the chain."""
+"""Item, dotted key, and unit of each property of the chain."""
 
 
 def chain_part(case: Case) -> Part:
@@ -83,7 +80,7 @@ def _count_lines(case: Case) -> Iterator[Line]:
 
 
 def _property_lines(case: Case) -> Iterator[Line]:
-    for item, key, unit, kind in CHAIN_KEYS:
+    for item, key, unit in CHAIN_KEYS:
         origin = case.scenario.origins().get(key)
         if origin is None or origin.typical is None:
             continue
@@ -96,7 +93,7 @@ def _property_lines(case: Case) -> Iterator[Line]:
             low = high = None
         else:
             note += "; chains of this kind lie within the band"
-        yield Line(item, origin.typical, unit, "scenario", note, low, high)
+        yield Line(item, origin.typical, unit, STATED, note, low, high, digits=5)
 
 
 def carriers_part(case: Case) -> Part | None:
@@ -115,26 +112,31 @@ def carriers_part(case: Case) -> Part | None:
     carriers = case.scenario.carriers
     if carriers is None:
         return None
-    drawings = ()
+    drawings: tuple[tuple[str, str], ...] = ()
     if case.lift.pocket is not None:
         caption = (
             "The pocket in the frame of its link, for a strand that rises: the chain runs upward, "
             "a is upward from the link's lower pin, b is away from the loop."
         )
-        drawings = ((caption, pocket_svg(case.lift, case.is_from_back)),)
+        drawings = (
+            (
+                caption,
+                pocket_svg(case.lift, case.scenario.chain.roller_diameter, case.is_from_back),
+            ),
+        )
     return Part(
         "carriers",
         "Carriers and their places",
         "Every carrier is rigid on one link and must neither touch the next link nor reach the "
         "sprocket. Links are counted in the direction of travel from any link; what counts is the "
         "spacing.",
-        (*_place_lines(case), *_pocket_lines(case)),
+        (*_place_lines(case, carriers), *_pocket_lines(case, carriers.pocket)),
         drawings,
     )
 
 
-def _place_lines(case: Case) -> Iterator[Line]:
-    carriers, links = case.scenario.carriers, case.lift.carrier_links
+def _place_lines(case: Case, carriers: Carriers) -> Iterator[Line]:
+    links = case.lift.carrier_links
     count, spares = len(links), spare_parts(len(links))
     yield Line("carriers", count, "1", DRAWN)
     yield Line("spare carriers", spares, "1", PRACTICE, f"make {count + spares} in all")
@@ -145,12 +147,13 @@ def _place_lines(case: Case) -> Iterator[Line]:
         left_over = case.lift.n_links - count * carriers.every
         if left_over:
             yield Line("links left over in the last gap", left_over, "1", DRAWN)
-    yield Line("links that hold a carrier", link_list(links), source=DRAWN, note="first link is 0")
+    note = "any link may be the first, number 0; counted in the direction of travel"
+    yield Line("links that hold a carrier", link_list(links), source=DRAWN, note=note)
     yield Line("mass of one carrier, empty", carriers.mass, "kg")
 
 
-def _pocket_lines(case: Case) -> Iterator[Line]:
-    pocket, form = case.scenario.carriers.pocket, case.lift.pocket
+def _pocket_lines(case: Case, pocket: Pocket) -> Iterator[Line]:
+    form, balls = case.lift.pocket, case.scenario.balls
     if pocket.outline is None:
         yield Line("length of the floor, back to lip", pocket.floor, "m")
         yield Line("height of the lip over the floor", pocket.lip, "m")
@@ -158,29 +161,49 @@ def _pocket_lines(case: Case) -> Iterator[Line]:
         yield Line("tilt of the floor, lip end up", pocket.tilt, "rad")
         yield Line("line of the pins to the back of the pocket", pocket.offset, "m")
     yield Line("thickness of the material", pocket.wall, "m")
-    if form is None:
+    if form is None or balls is None:
         return
+    yield from _width_lines(case, balls.diameter, pocket.friction)
     for number, (a, b) in enumerate(form.outline, 1):
         yield Line(
             f"inner corner {number} of the pocket: a, b",
-            f"{1e3 * a:.2f}, {1e3 * b:.2f} mm",
+            place_text(a, b, 2),
             source=DRAWN,
             note="inner surface, on the side of the ball" if number == 1 else "",
         )
     yield Line(
         "center of a ball at rest: a, b",
-        f"{1e3 * form.seat[0]:.2f}, {1e3 * form.seat[1]:.2f} mm",
+        place_text(*form.seat, 2),
         source=DRAWN,
     )
     yield Line("play of the ball along the floor", form.play, "m", DRAWN)
     for wheel in case.lift.wheels:
-        yield Line(
-            f"radius swept by carriers round {wheel.name}",
-            swept_radius(case.lift, wheel),
-            "m",
-            DRAWN,
-            "keep everything that stands outside it, balls not counted",
-        )
+        item = f"radius that carriers sweep round {wheel.name}"
+        note = "empty; keep everything that stands outside it"
+        yield Line(item, swept_radius(case.lift, wheel), "m", DRAWN, note)
+
+
+def _width_lines(case: Case, ball: float, friction: float) -> Iterator[Line]:
+    """What the planar model leaves to the workshop."""
+    note = (
+        f"ball and {1e3 * SIDE_PLAY:g} mm; cheeks or a hollow floor keep it in; {UNKNOWN}: planar"
+    )
+    yield Line(
+        "inside width of the pocket, across the plane", ball + SIDE_PLAY, "m", PRACTICE, note
+    )
+    note = "of a ball on the carrier; smooth hard plastic or metal is within it"
+    origin = case.scenario.origins().get("carriers.pocket.friction")
+    low, high = (origin.low, origin.high) if origin is not None else (None, None)
+    is_open = low == high
+    yield Line(
+        "coefficient of friction, calculated with",
+        friction,
+        "1",
+        STATED,
+        note,
+        None if is_open else low,
+        None if is_open else high,
+    )
 
 
 def link_list(links: np.ndarray) -> str:
@@ -206,86 +229,3 @@ def _ordinal(number: int) -> str:
     endings = {1: "st", 2: "nd", 3: "rd"}
     ending = "th" if 10 <= number % 100 <= 20 else endings.get(number % 10, "th")
     return f"{number}{ending}"
-
-
-def balls_part(case: Case) -> Part | None:
-    """Write the balls, where they are set down and where they leave.
-
-    Parameters
-    ----------
-    case : Case
-        The lift.
-
-    Returns
-    -------
-    Part or None
-        None for a lift without balls.
-    """
-    balls = case.scenario.balls
-    if balls is None or case.lift.pocket is None:
-        return None
-    lines = [
-        Line("diameter of a ball", balls.diameter, "m"),
-        Line("mass of a ball", balls.mass, "kg", note=balls.material or ""),
-        Line("way of feeding", balls.feed.kind),
-    ]
-    if balls.feed.rate is not None:
-        lines.append(Line("balls fed", balls.feed.rate, "s-1", note=_jitter_text(balls.feed)))
-    return Part(
-        "balls",
-        "Balls, feed and discharge",
-        "Places are those of the drawing: right and up from its origin.",
-        (*lines, *_feed_lines(case), *_discharge_lines(case)),
-    )
-
-
-def _jitter_text(feed) -> str:
-    return f"each up to {format_si(feed.jitter, 'time')} early or late" if feed.jitter else ""
-
-
-def _feed_lines(case: Case) -> Iterator[Line]:
-    feed, lift = case.scenario.balls.feed, case.lift
-    if feed.at is not None:
-        x, y = case.across(feed.at[0]), feed.at[1]
-        yield Line(f"{feed.kind}: mouth or lower end", _place(x, y))
-    if feed.kind == "trough":
-        yield Line("slope of the trough, down toward the chain", feed.slope, "rad")
-    for strand in lift.strands:
-        if not strand.carrying:
-            continue
-        for what, height in (("is set down", lift.load_height), ("leaves", lift.unload_height)):
-            place = _ball_at(case, strand.start, height)
-            yield Line(
-                f"center of a ball where it {what}, strand {strand.name}",
-                _place(case.across(place[0]), place[1]),
-                source=DRAWN,
-                note="in a pocket that passes this height, at rest in its seat",
-            )
-
-
-def _ball_at(case: Case, start: int, height: float) -> np.ndarray:
-    """Return the center of a seated ball on a strand as laid, its link's middle at a height [m]."""
-    sized, lift = case.sized, case.lift
-    path = sized.path if sized is not None else lift.route
-    along = path.direction[start]
-    outward = np.array([along[1], -along[0]])
-    rise = float(along @ np.asarray(lift.up))
-    foot = float(path.start[start] @ np.asarray(lift.up))
-    return path.start[start] + (height - foot) / rise * along + lift.pocket.seat[1] * outward
-
-
-def _discharge_lines(case: Case) -> Iterator[Line]:
-    mouth = case.scenario.balls.discharge
-    if mouth is None:
-        yield Line("discharge chute", "not stated", note="simulated as one that suits the speed")
-        return
-    x, y = case.across(mouth.at[0]), mouth.at[1]
-    yield Line("lower edge of the discharge mouth", _place(x, y))
-    yield Line("opening, straight up from it", mouth.mouth, "m")
-    yield Line("slope of the chute, down away from the lift", mouth.slope, "rad")
-    lip = f"{math.degrees(mouth.slope):.1f}°"
-    yield Line("floor of the chute", f"starts at the lower edge and falls at {lip}", source=DRAWN)
-
-
-def _place(x: float, y: float) -> str:
-    return f"{1e3 * x + 0.0:.1f}, {1e3 * y + 0.0:.1f} mm"

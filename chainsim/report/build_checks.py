@@ -4,26 +4,27 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator
+from functools import partial
 
 import numpy as np
 
 from chainsim import closed_forms as cf
-from chainsim.analysis.chain_motion import chain_speed
 from chainsim.analysis.stops import overrun
+from chainsim.analysis.survey import Survey
 from chainsim.report.build_case import Case, steady_mean
-from chainsim.report.build_drive import running_torque
+from chainsim.report.build_drive import driven_rate, reckoned_current, run_back_line, running_torque
 from chainsim.report.build_line import (
     CLOSED,
-    CLOSED_ONLY,
     DRAWN,
     SIMULATED,
     STATED,
     UNKNOWN,
     Line,
     Part,
+    known,
     ran_or_reckoned,
 )
-from chainsim.report.build_takeup import movable_axles, travel_of
+from chainsim.report.build_takeup import movable_axles, travel_of, way_of
 from chainsim.report.build_tolerances import PITCH_SHARE
 
 SPEED_BAND = 0.05
@@ -35,6 +36,15 @@ WEIGHT_BAND = 0.05
 FRICTION_BAND = 0.3
 """Band of a torque or current to accept (dimensionless), since friction is seldom known; our
 choice."""
+
+BOUNCE_BAND = 0.1
+"""Band of a bounce to accept where the stiffness was stated (dimensionless); our choice."""
+
+MOTION_BAND = 1.5
+"""How far a motion may exceed the predicted one (dimensionless); our choice."""
+
+COUNTED_MINUTES = 10
+"""Minutes over which balls are counted (dimensionless)."""
 
 PROVING = 0.01
 """Share of balls lost that the proving count is to exclude (dimensionless)."""
@@ -67,65 +77,75 @@ def checks_part(case: Case) -> Part:
 
 def _banded(line: Line, share: float) -> Line:
     """Give a line a band round its value."""
-    if not isinstance(line.value, float) or not math.isfinite(line.value):
+    if isinstance(line.value, str) or line.value is None or not math.isfinite(line.value):
         return line
     width = abs(line.value) * share
     return line._replace(low=line.value - width, high=line.value + width)
 
 
+def _up_to(line: Line, factor: float) -> Line:
+    """Give a line a band from nothing up to a multiple of its value."""
+    if isinstance(line.value, str) or line.value is None or not math.isfinite(line.value):
+        return line
+    return line._replace(high=factor * line.value)
+
+
 def _standing_lines(case: Case) -> Iterator[Line]:
     n = case.lift.n_links
-    yield Line("links counted", n, "1", DRAWN, "", n, n)
+    yield Line("links, counted", n, "1", DRAWN, "", n, n, digits=6)
     if case.scenario.carriers is not None:
         count = len(case.lift.carrier_links)
-        yield Line("carriers counted", count, "1", DRAWN, "", count, count)
+        yield Line("carriers, counted", count, "1", DRAWN, "", count, count, digits=6)
     for k in movable_axles(case):
-        mount, name = case.scenario.sprocket[k].mount, case.lift.wheels[k].name
-        if mount.kind == "spring":
-            line = Line(f"{name}: spring at the place on the drawing", mount.set_force, "N")
-        elif mount.kind == "counterweight":
-            line = Line(f"{name}: counterweight on the scales", mount.weight, "kg")
-        else:
-            line = Line(f"{name}: all that hangs, on the scales", mount.mass, "kg")
-        yield _banded(line, WEIGHT_BAND)
-        new = travel_of(case, k).new
-        off = 0.5 * PITCH_SHARE * case.loop
-        rest = case.simulated(lambda s, k=k: _rest_travel(s, case, k))
-        line = Line(f"{name}: travel from the drawing, standing, empty", None, "m")
-        line = ran_or_reckoned(line, rest, new)
-        middle = rest if rest is not None else new
-        note = f"{line.note}; " if line.note else ""
-        yield line._replace(
-            low=middle - off,
-            high=middle + off,
-            note=f"{note}band: chain {100 * PITCH_SHARE:g} % longer or shorter",
+        yield _banded(_weight_line(case, k), WEIGHT_BAND)
+        yield _rest_line(case, k)
+        yield from _bounce_line(case, case.lift.wheels[k].name)
+
+
+def _weight_line(case: Case, k: int) -> Line:
+    """Setting of a take-up, measured."""
+    mount, name = case.scenario.sprocket[k].mount, case.lift.wheels[k].name
+    if mount.kind == "spring":
+        return Line(
+            f"{name}: force of the spring at the place on the drawing", mount.set_force, "N"
         )
-        yield from _bounce_line(case, name)
+    if mount.kind == "counterweight":
+        return Line(f"{name}: counterweight, on the scales", mount.weight, "kg")
+    return Line(f"{name}: all that hangs, on the scales", mount.mass, "kg")
 
 
-def _rest_travel(s, case: Case, k: int) -> float:
+def _rest_line(case: Case, k: int) -> Line:
+    """Where a take-up comes to stand."""
+    new, rest = travel_of(case, k).new, case.simulated(partial(_rest_travel, case=case, k=k))
+    line = Line(f"{case.lift.wheels[k].name}: travel from the drawing, standing, empty", None, "m")
+    line = ran_or_reckoned(line, rest, new)
+    middle = rest if known(rest) else new
+    off = 0.5 * PITCH_SHARE * case.loop
+    note = f"{line.note}; " if line.note else ""
+    note += f"band for a chain {100 * PITCH_SHARE:g} % longer or shorter"
+    return line._replace(low=middle - off, high=middle + off, note=note)
+
+
+def _rest_travel(s: Survey, case: Case, k: int) -> float:
     """Travel of an axle in the first sample [m]."""
-    way = np.array(case.sized.path.wheels[k].movable)
-    return float((s.center[0, k] - np.array(case.lift.wheels[k].center)) @ way)
+    return float((s.center[0, k] - np.array(case.lift.wheels[k].center)) @ way_of(case, k))
 
 
 def _bounce_line(case: Case, name: str) -> Iterator[Line]:
     """Bounce of the take-up by hand: it tells the stiffness of the chain."""
-    mode = case.simulated(
-        lambda s: next(m.frequency for m in s.rec.modes if m.kind == f"take-up {name}")
-    )
+    mode = case.mode(f"take-up {name}")
     if mode is None:
         return
     origin = case.scenario.origins().get("chain.link_stiffness")
-    low, high = 0.8, 1.2
+    low, high = 1.0 - BOUNCE_BAND, 1.0 + BOUNCE_BAND
     if origin is not None and origin.low and origin.high and origin.low < origin.high:
-        low, high = (math.sqrt(end / origin.typical) for end in (origin.low, origin.high))
+        low, high = (math.sqrt(end / (origin.typical or end)) for end in (origin.low, origin.high))
     yield Line(
-        f"{name}: bounces when tapped from below, chain empty",
+        f"{name}: bounces when tapped from below, standing",
         mode,
         "Hz",
         SIMULATED,
-        "filmed from the side; lower than the band is a softer chain",
+        "filmed from the side at many frames a second; below the band the chain is softer",
         low * mode,
         high * mode,
     )
@@ -133,103 +153,63 @@ def _bounce_line(case: Case, name: str) -> Iterator[Line]:
 
 def _running_lines(case: Case) -> Iterator[Line]:
     speed = case.simulated(lambda s: s.steady_speed)
-    turn = case.loop / speed if speed and math.isfinite(speed) else None
+    turn = case.loop / float(speed) if speed else None
     line = Line("time of one turn of the chain, one carrier watched", None, "s")
     yield _banded(ran_or_reckoned(line, turn, case.loop / case.speed), SPEED_BAND)
-    rate = case.simulated(lambda s: abs(steady_mean(s, "sprockets/rate", case.driven)))
     line = Line("speed of the driven sprocket", None, "rad s-1")
-    yield _banded(ran_or_reckoned(line, rate, case.rate), SPEED_BAND)
+    yield _banded(ran_or_reckoned(line, driven_rate(case), case.rate), SPEED_BAND)
     teeth = case.lift.wheels[case.driven].teeth
     if teeth:
         turns = int(np.lcm(case.lift.n_links, teeth)) // case.lift.n_links
-        yield Line(
-            "turns of the chain until a marked link is on its marked tooth again",
-            turns,
-            "1",
-            DRAWN,
-            "any other number is a skipped tooth",
-            turns,
-            turns,
-        )
+        item = "turns of the chain until a marked link is on its marked tooth again"
+        yield Line(item, turns, "1", DRAWN, "any other number: a tooth was skipped", turns, turns)
     for k in movable_axles(case):
         travel, name = travel_of(case, k), case.lift.wheels[k].name
-        width = travel.high - travel.low
-        line = Line(f"{name}: moves up and down while running by", None, "m", note="whole run")
-        line = ran_or_reckoned(line, width)
-        yield line._replace(high=1.5 * width if line.is_known else None)
-    yield from _shake_line(case)
-
-
-def _shake_line(case: Case) -> Iterator[Line]:
-    """Speed variation, the rhythm of the teeth."""
-    rate = case.speed / case.scenario.chain.pitch
-    yield _banded(Line("rhythm of the teeth, heard or filmed", rate, "Hz", CLOSED), SPEED_BAND)
-    speed = case.simulated(chain_speed)
-    if speed is None:
-        return
+        note = "range over the whole run, starts and stops included"
+        line = Line(f"{name}: moves up and down by", None, "m", "", note)
+        yield _up_to(ran_or_reckoned(line, travel.high - travel.low), MOTION_BAND)
+    teeth_rate = case.speed / case.scenario.chain.pitch
+    line = Line("rhythm of the teeth, filmed or heard", teeth_rate, "Hz", CLOSED)
+    yield _banded(line, SPEED_BAND)
 
 
 def _drive_lines(case: Case) -> Iterator[Line]:
     mean, closed = running_torque(case)
     line = Line("mean torque on the driven sprocket, loaded", None, "N m")
     yield _banded(ran_or_reckoned(line, mean, closed), FRICTION_BAND)
-    motor = case.scenario.drive.motor
-    if motor is None:
-        yield Line(
-            "current of the motor, loaded",
-            None,
-            "A",
-            UNKNOWN,
-            "no motor was calculated with: write down the value of the first good day",
-        )
+    if case.scenario.drive.motor is None:
+        note = "no motor was calculated with: write down the value of the first good day"
+        yield Line("current of the motor, loaded", None, "A", UNKNOWN, note)
         return
     current = case.simulated(lambda s: steady_mean(s, "drive/current"))
-    reckoned = None
-    if closed is not None:
-        load = closed / (motor.gear_ratio * motor.gear_efficiency)
-        reckoned = cf.motor_current(
-            load, motor.stall_torque, motor.no_load_current, motor.stall_current
-        )
     line = Line("current of the motor, loaded", None, "A")
-    yield _banded(ran_or_reckoned(line, current, reckoned), FRICTION_BAND)
+    line = ran_or_reckoned(line, current, reckoned_current(case, closed))
+    yield _banded(line, FRICTION_BAND)
 
 
 def _ball_lines(case: Case) -> Iterator[Line]:
-    if case.scenario.balls is None or case.scenario.carriers is None:
+    balls, carriers = case.scenario.balls, case.scenario.carriers
+    if balls is None or carriers is None:
         return
-    spacing = case.scenario.carriers.every * (case.scenario.balls.spacing or 1)
+    spacing = carriers.every * (balls.spacing or 1)
     pockets = cf.pocket_rate(case.speed, spacing * case.scenario.chain.pitch)
     yield _banded(Line("pockets that come by", pockets, "s-1", CLOSED), SPEED_BAND)
-    demand = case.scenario.limits.ball_rate or case.scenario.balls.feed.rate
+    demand = case.scenario.limits.ball_rate or balls.feed.rate
     found = next((f.value for f in case.findings if f.name == "rate_met"), None)
-    line = Line("balls delivered, counted over ten minutes", None, "s-1")
+    line = Line(f"balls delivered, counted over {COUNTED_MINUTES} min", None, "s-1")
     line = ran_or_reckoned(line, found, min(demand, pockets) if demand else pockets)
-    yield line._replace(low=demand - 0.1 / 60.0 if demand else None)
+    yield line._replace(low=demand - 1.0 / (60.0 * COUNTED_MINUTES) if demand else None)
     trials = cf.trials_without_failure(PROVING)
-    yield Line(
-        "balls to run in a row with none lost",
-        trials,
-        "1",
-        CLOSED,
-        f"then fewer than {100 * PROVING:g} % are lost, with 95 % confidence; one lost starts the "
-        "count again, after its cause is found",
-        trials,
-        digits=6,
+    note = (
+        f"then fewer than {100 * PROVING:g} % are lost, with 95 % confidence; after a lost one "
+        "find its cause and count anew"
     )
+    item = "balls to run in a row with none lost"
+    yield Line(item, trials, "1", CLOSED, note, trials, digits=6)
 
 
 def _stop_lines(case: Case) -> Iterator[Line]:
-    has_stop = "stop" in case.situations_run
-    ran_on = case.simulated(overrun) if has_stop else None
-    line = Line("chain runs on after a stop by", None, "m", note="ramp included")
-    line = ran_or_reckoned(line, ran_on.distance if ran_on else None)
-    yield line._replace(high=1.2 * line.value if line.is_known else None)
-    yield Line(
-        "loaded, supply cut: runs back by",
-        None,
-        "m",
-        STATED,
-        "see the direction of running; more than a pitch needs a backstop",
-        None,
-        case.scenario.chain.pitch,
-    )._replace(source=CLOSED_ONLY if has_stop else UNKNOWN)
+    ran_on = case.simulated(overrun) if "stop" in case.situations_run else None
+    line = Line("chain runs on after a stop by", None, "m", STATED, "ramp of the stop included")
+    yield _up_to(ran_or_reckoned(line, ran_on.distance if ran_on else None), MOTION_BAND)
+    yield run_back_line(case)._replace(high=case.scenario.chain.pitch)

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Iterator
 
 from chainsim import closed_forms as cf
@@ -20,8 +19,13 @@ from chainsim.report.build_line import (
     UNKNOWN,
     Line,
     Part,
+    known,
     ran_or_reckoned,
 )
+from chainsim.scenario.schema_drive import Drive, Motor
+
+SPEED_SHARE = 0.05
+"""Band of the motor's speed to accept (dimensionless); our choice."""
 
 CONTINUOUS_SHARE = 0.8
 """Share of its continuous rating that a motor runs at (dimensionless); common practice, no
@@ -66,17 +70,50 @@ def running_torque(case: Case) -> tuple[float | None, float | None]:
     return (abs(load.mean_torque) if load else None), closed
 
 
+def driven_rate(case: Case) -> float | None:
+    """Return the mean speed of the driven sprocket in steady running [rad/s], None without a run.
+
+    Parameters
+    ----------
+    case : Case
+        The lift.
+    """
+    return case.simulated(lambda s: abs(steady_mean(s, "sprockets/rate", case.driven)))
+
+
+def wanted_torques(case: Case) -> tuple[float, float] | None:
+    """Return what a gearmotor must give where the scenario has none.
+
+    Parameters
+    ----------
+    case : Case
+        The lift.
+
+    Returns
+    -------
+    lasting, stall : float
+        Least continuous and least stall torque at the sprocket [N m]; None where neither a run nor
+        a closed form tells.
+    """
+    load, (mean, closed) = case.simulated(duty), running_torque(case)
+    running = mean if known(mean) else closed
+    heating = load.rms_torque if load is not None and known(load.rms_torque) else running
+    if running is None or heating is None:
+        return None
+    peak = load.peak_torque / CONTINUOUS_SHARE if load is not None else 0.0
+    return heating / CONTINUOUS_SHARE, max(STALL_RESERVE * running, peak)
+
+
 def _load_lines(case: Case) -> Iterator[Line]:
     load, (mean, closed) = case.simulated(duty), running_torque(case)
     radius = case.lift.wheels[case.driven].radius
-    rate = case.simulated(lambda s: abs(steady_mean(s, "sprockets/rate", case.driven)))
     yield Line("driven sprocket", case.lift.wheels[case.driven].name)
     line = Line("speed of the driven sprocket", None, "rad s-1", note="mean over a turn")
-    yield ran_or_reckoned(line, rate, case.rate)
+    yield ran_or_reckoned(line, driven_rate(case), case.rate)
     yield ran_or_reckoned(Line("mean torque on it, running", None, "N m"), mean, closed)
     yield ran_or_reckoned(Line("r.m.s. torque, running", None, "N m"), load and load.rms_torque)
     start = (starting_pull(case.sized) * radius + (closed or 0.0)) if case.sized else None
-    note = "samples of the whole run" if load else "running and starting together"
+    note = "samples of the whole run; closed forms know running and starting only"
     line = Line("peak torque", None, "N m", note=note)
     yield ran_or_reckoned(line, load and load.peak_torque, start)
     power = closed * case.rate if closed is not None else None
@@ -86,23 +123,20 @@ def _load_lines(case: Case) -> Iterator[Line]:
 
 def _order_lines(case: Case) -> Iterator[Line]:
     """What to order where the scenario has no motor."""
-    load, (mean, closed) = case.simulated(duty), running_torque(case)
-    torque = load.rms_torque if load else closed
-    if torque is None or not math.isfinite(torque):
+    torques = wanted_torques(case)
+    if torques is None:
         return
-    source = SIMULATED if load else CLOSED_ONLY
+    source = SIMULATED if case.run is not None else CLOSED_ONLY
     yield Line(
         "gearmotor: continuous torque of at least",
-        torque / CONTINUOUS_SHARE,
+        torques[0],
         "N m",
         source,
         f"running at most at {100 * CONTINUOUS_SHARE:.0f} % of its rating; {PRACTICE}",
     )
-    stall = STALL_RESERVE * (mean if mean is not None else closed or 0.0)
-    peak = load.peak_torque / CONTINUOUS_SHARE if load else 0.0
     yield Line(
         "gearmotor: stall torque of at least",
-        max(stall, peak),
+        torques[1],
         "N m",
         source,
         f"{STALL_RESERVE:g} times the running torque, and above the peak; {PRACTICE}",
@@ -113,9 +147,9 @@ def _order_lines(case: Case) -> Iterator[Line]:
         rate,
         "rad s-1",
         STATED,
-        "not the speed without load; set it by the supply",
-        0.95 * rate,
-        1.05 * rate,
+        "not its speed without load; set it by the supply or a controller",
+        (1.0 - SPEED_SHARE) * rate,
+        (1.0 + SPEED_SHARE) * rate,
     )
 
 
@@ -129,7 +163,7 @@ def _pull_line(case: Case) -> Line:
     if motor is not None:
         stall = motor.stall_torque * motor.gear_ratio * motor.gear_efficiency
     note = (
-        "above it a jam loads the links beyond what they are allowed: limit it by clutch or supply"
+        "above it a jam loads links beyond what they are allowed: a clutch or the supply limits it"
     )
     if stall is not None:
         word = "does not reach it" if stall <= spare else "EXCEEDS it"
@@ -139,10 +173,10 @@ def _pull_line(case: Case) -> Line:
 
 def _motor_lines(case: Case) -> Iterator[Line]:
     motor, (mean, closed) = case.scenario.drive.motor, running_torque(case)
-    torque = mean if mean is not None else closed
-    if torque is None:
+    torque = mean if known(mean) else closed
+    if motor is None or torque is None:
         return
-    source = SIMULATED if mean is not None else CLOSED_ONLY
+    source = SIMULATED if known(mean) else CLOSED_ONLY
     load = torque / (motor.gear_ratio * motor.gear_efficiency)
     yield Line("motor: supply", motor.supply, "V")
     yield Line("motor: gear ratio", motor.gear_ratio, "1")
@@ -156,23 +190,44 @@ def _motor_lines(case: Case) -> Iterator[Line]:
         "motor: share of its stall torque", share, "share", source, "", None, 1 / STALL_RESERVE
     )
     speed = cf.motor_speed(load, motor.no_load_speed, motor.stall_torque)
-    ran = case.simulated(lambda s: abs(steady_mean(s, "sprockets/rate", case.driven)))
+    ran = driven_rate(case)
     line = Line("motor: speed, running", None, "rad s-1")
     yield ran_or_reckoned(line, ran and ran * motor.gear_ratio, speed)
     slow = case.simulated(droop)
     line = Line("motor: loss of speed under load", None, "share")
     yield ran_or_reckoned(line, slow and slow.share, 1.0 - speed / motor.no_load_speed)
-    yield from _heat_lines(case, load, speed)
+    yield from _heat_lines(case, motor, load, speed)
 
 
-def _heat_lines(case: Case, load: float, speed: float) -> Iterator[Line]:
-    """Current, and the power that stays in the motor as heat."""
+def reckoned_current(case: Case, torque: float | None) -> float | None:
+    """Return the current of the motor at a torque on the sprocket, by its straight line.
+
+    Parameters
+    ----------
+    case : Case
+        The lift.
+    torque : float or None
+        At the driven sprocket [N m].
+
+    Returns
+    -------
+    float or None
+        Current [A]; None without a motor or a torque.
+    """
     motor = case.scenario.drive.motor
+    if motor is None or torque is None:
+        return None
+    load = torque / (motor.gear_ratio * motor.gear_efficiency)
+    return cf.motor_current(load, motor.stall_torque, motor.no_load_current, motor.stall_current)
+
+
+def _heat_lines(case: Case, motor: Motor, load: float, speed: float) -> Iterator[Line]:
+    """Current, and the power that stays in the motor as heat."""
     closed = cf.motor_current(load, motor.stall_torque, motor.no_load_current, motor.stall_current)
     ran = case.simulated(lambda s: steady_mean(s, "drive/current"))
     yield ran_or_reckoned(Line("motor: current, running", None, "A"), ran, closed)
     yield Line("motor: current when stalled", motor.stall_current, "A", STATED, "fuse below it")
-    has_run = ran is not None and math.isfinite(ran)
+    has_run = known(ran)
     heat = motor.supply * (ran if has_run else closed) - load * speed
     yield Line(
         "motor: heat",
@@ -191,14 +246,11 @@ def direction_part(case: Case) -> Part:
     case : Case
         The lift.
     """
-    view = "behind" if case.is_from_back else "the front"
-    wheel = case.scenario.sprocket[case.driven]
-    is_ccw = (wheel.side == "inside") != case.is_from_back
     rising = [strand.name for strand in case.lift.strands if strand.carrying]
     lines = [
         Line(
-            f"the driven sprocket turns, seen from {view}",
-            "counterclockwise" if is_ccw else "clockwise",
+            f"{case.lift.wheels[case.driven].name}, driven, turns",
+            turning(case),
             note="mark it with an arrow on the lift; check it with the chain off",
         ),
         Line("strand that rises with the balls", ", ".join(rising) or "none"),
@@ -209,7 +261,20 @@ def direction_part(case: Case) -> Part:
     return Part("direction", "Direction of running, and a reversed supply", text, tuple(lines))
 
 
-def reversed_text(drive) -> str:
+def turning(case: Case) -> str:
+    """Say which way the driven sprocket turns, from which side.
+
+    Parameters
+    ----------
+    case : Case
+        The lift.
+    """
+    is_inside = case.scenario.sprocket[case.driven].side == "inside"
+    word = "counterclockwise" if is_inside != case.is_from_back else "clockwise"
+    return f"{word}, seen from {'behind' if case.is_from_back else 'the front'}"
+
+
+def reversed_text(drive: Drive) -> str:
     """Say what a drive does when its supply is reversed.
 
     Parameters
@@ -240,13 +305,25 @@ def _supply_lines(case: Case) -> Iterator[Line]:
         source=SIMULATED if has_reversed else UNKNOWN,
         note="" if has_reversed else "from how it is built; try it without balls first",
     )
+    yield run_back_line(case)
+
+
+def run_back_line(case: Case) -> Line:
+    """Return the line about running back after a cut of the supply.
+
+    Parameters
+    ----------
+    case : Case
+        The lift.
+    """
     has_cut = "supply cut" in case.situations_run
     back = case.simulated(run_back) if has_cut else None
-    line = Line("run-back after a cut of the supply", None, "m", note=_cut_text(drive))
-    yield ran_or_reckoned(line, back.distance if back else None)
+    note = _cut_text(case.scenario.drive)
+    line = Line("runs back after a cut of the supply, loaded", None, "m", STATED, note)
+    return ran_or_reckoned(line, back.distance if back else None)
 
 
-def _cut_text(drive) -> str:
+def _cut_text(drive: Drive) -> str:
     if drive.backstop:
         return "a backstop holds it"
     if drive.motor is not None and not drive.motor.back_drivable:

@@ -18,6 +18,9 @@ CLOSED_ONLY = f"closed form, {UNKNOWN}"
 
 NO_VALUE = "–"
 
+ROUNDING = 1e-6
+"""Size below which a number is printed as none, in the sheet's unit: millionths of a millimeter."""
+
 SHEET_UNITS = {
     "m": (1e3, "mm"),
     "kg": (1e3, "g"),
@@ -67,7 +70,7 @@ class Line(NamedTuple):
     low: float | None = None
     high: float | None = None
     subject: str = ""
-    digits: int = 4
+    digits: int = 3
 
     @property
     def is_known(self) -> bool:
@@ -119,8 +122,8 @@ class Line(NamedTuple):
             return value
         if value is None or not math.isfinite(value):
             return ""
-        factor = SHEET_UNITS.get(self.unit, (1.0, ""))[0]
-        return significant(factor * value, self.digits)
+        shown = SHEET_UNITS.get(self.unit, (1.0, ""))[0] * value
+        return significant(0.0 if abs(shown) < ROUNDING else shown, self.digits)
 
 
 class Part(NamedTuple):
@@ -159,6 +162,20 @@ def known(value: float | str | None) -> bool:
     if isinstance(value, str):
         return bool(value)
     return value is not None and math.isfinite(value)
+
+
+def place_text(x: float, y: float, decimals: int = 1) -> str:
+    """Write a place in millimeters, without a negative zero.
+
+    Parameters
+    ----------
+    x, y : float
+        Coordinates [m].
+    decimals : int
+        Digits behind the point (dimensionless).
+    """
+    numbers = (round(1e3 * value, decimals) + 0.0 for value in (x, y))
+    return ", ".join(f"{number:.{decimals}f}" for number in numbers).replace("-", "−") + " mm"
 
 
 def ran_or_reckoned(line: Line, simulated: float | None, closed: float | None = None) -> Line:

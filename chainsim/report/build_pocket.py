@@ -3,21 +3,48 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Callable
 
 import numpy as np
 
+from chainsim.errors import LayoutError
 from chainsim.model.lift import Lift
+from chainsim.model.pockets import PocketForm
 from chainsim.model.route import Wheel
 from chainsim.report.style import FAINT, GRID, INK, STEEL
 
 SCALE = 2.0
 """Paper over part (dimensionless)."""
 
-ROOM = 12.0
+ROOM = 22.0
 """Paper round the drawing [mm]."""
 
 TEXT = 3.0
 """Height of the letters [mm]."""
+
+AXIS = 5.0
+"""Length of the arms of the axes [mm]."""
+
+Paper = Callable[[np.ndarray], tuple[float, float]]
+"""Takes a place in the link's frame [m] to the paper [mm]."""
+
+
+def pocket_of(lift: Lift) -> PocketForm:
+    """Return the pocket that all carriers have.
+
+    Parameters
+    ----------
+    lift : Lift
+        The lift.
+
+    Raises
+    ------
+    LayoutError
+        If it has no pockets.
+    """
+    if lift.pocket is None:
+        raise LayoutError("a lift without balls or carriers has no pocket")
+    return lift.pocket
 
 
 def swept_radius(lift: Lift, wheel: Wheel) -> float:
@@ -36,22 +63,23 @@ def swept_radius(lift: Lift, wheel: Wheel) -> float:
         Radius [m]; for a wheel outside the loop that of the side away from it is meant, and the
         carriers face away.
     """
-    pitch = lift.scenario.chain.pitch
+    pitch, form = lift.route.pitch, pocket_of(lift)
     half = math.asin(min(0.5 * pitch / wheel.radius, 1.0))
-    form = lift.pocket
     points = np.vstack([form.spine, [[0.0, 0.0]]])
     inward = wheel.side * wheel.radius * math.cos(half)
     reach = np.hypot(points[:, 0] - 0.5 * pitch, inward + points[:, 1])
     return float(reach.max()) + form.half_wall
 
 
-def pocket_svg(lift: Lift, mirrored: bool = False) -> str:
+def pocket_svg(lift: Lift, roller_diameter: float, mirrored: bool = False) -> str:
     """Draw a pocket on its link, with its ball, at twice the true size.
 
     Parameters
     ----------
     lift : Lift
         A lift with balls.
+    roller_diameter : float
+        Of the chain [m].
     mirrored : bool
         Whether it is seen from behind.
 
@@ -60,11 +88,13 @@ def pocket_svg(lift: Lift, mirrored: bool = False) -> str:
     str
         An SVG in millimeters; the link stands upright as on a rising strand.
     """
-    form, pitch, radius = lift.pocket, lift.scenario.chain.pitch, lift.ball_radius
-    roller = 0.5 * lift.scenario.chain.roller_diameter
-    points = np.vstack([form.outline, form.spine, [[0.0, 0.0], [pitch, 0.0]], [form.seat]])
-    low = points.min(axis=0) - [radius, radius]
-    high = points.max(axis=0) + [radius, radius]
+    form, pitch, radius = pocket_of(lift), lift.route.pitch, lift.ball_radius
+    roller = 0.5 * roller_diameter
+    seat = np.asarray(form.seat)
+    ball = np.array([seat - radius, seat + radius])
+    pins = np.array([[-roller, -roller], [pitch + roller, roller]])
+    points = np.vstack([form.outline, form.spine, ball, pins])
+    low, high = points.min(axis=0), points.max(axis=0)
     width, height = 1e3 * SCALE * (high - low)[::-1] + 2.0 * ROOM
 
     def paper(point: np.ndarray) -> tuple[float, float]:
@@ -76,7 +106,7 @@ def pocket_svg(lift: Lift, mirrored: bool = False) -> str:
 
     words = [_link(paper, pitch, roller), _material(paper, form), _ball(paper, form, radius)]
     words += [_corner(paper(point), k) for k, point in enumerate(form.outline, 1)]
-    words.append(_caption(paper, pitch, mirrored))
+    words.append(_caption(paper, pitch, roller, mirrored))
     return (
         f'<svg xmlns="http://www.w3.org/2000/svg" width="{width:.2f}mm" height="{height:.2f}mm" '
         f'viewBox="0 0 {width:.2f} {height:.2f}" font-family="Liberation Sans, sans-serif" '
@@ -86,9 +116,9 @@ def pocket_svg(lift: Lift, mirrored: bool = False) -> str:
     )
 
 
-def _link(paper, pitch: float, roller: float) -> str:
+def _link(paper: Paper, pitch: float, roller: float) -> str:
     """The link with its two pins and the arrow of travel."""
-    (x, y), (x2, y2) = paper(np.zeros(2)), paper(np.array([pitch, 0.0]))
+    (x, y), (_, y2) = paper(np.zeros(2)), paper(np.array([pitch, 0.0]))
     r = 1e3 * SCALE * roller
     line = (
         f'<path d="M{x:.2f} {y + 2 * r:.2f}V{y2 - 2 * r:.2f}" stroke="{FAINT}" '
@@ -102,7 +132,7 @@ def _link(paper, pitch: float, roller: float) -> str:
     return line + pins
 
 
-def _material(paper, form) -> str:
+def _material(paper: Paper, form: PocketForm) -> str:
     """The wall of the pocket along its middle line, and its inner surface."""
     middle = " ".join("{:.2f},{:.2f}".format(*paper(point)) for point in form.spine)
     inner = " ".join("{:.2f},{:.2f}".format(*paper(point)) for point in form.outline)
@@ -114,7 +144,7 @@ def _material(paper, form) -> str:
     )
 
 
-def _ball(paper, form, radius: float) -> str:
+def _ball(paper: Paper, form: PocketForm, radius: float) -> str:
     x, y = paper(np.asarray(form.seat))
     return (
         f'<circle cx="{x:.2f}" cy="{y:.2f}" r="{1e3 * SCALE * radius:.2f}" fill="none" '
@@ -132,13 +162,19 @@ def _corner(place: tuple[float, float], number: int) -> str:
     )
 
 
-def _caption(paper, pitch: float, mirrored: bool) -> str:
-    x, y = paper(np.array([0.0, 0.0]))
-    side = "end" if not mirrored else "start"
-    shift = -3.0 if not mirrored else 3.0
+def _caption(paper: Paper, pitch: float, roller: float, mirrored: bool) -> str:
+    """Names of the two pins, and the axes along which the corners are measured."""
+    x, y = paper(np.zeros(2))
     top = paper(np.array([pitch, 0.0]))[1]
+    away, anchor = (1.0, "start") if mirrored else (-1.0, "end")
+    beside = x + away * (1e3 * SCALE * roller + 1.5)
+    tip = x - away * AXIS
     return (
-        f'<text x="{x + 2 * shift:.2f}" y="{y + 1:.2f}" text-anchor="{side}">a = b = 0</text>'
-        f'<text x="{x + 2 * shift:.2f}" y="{top + 1:.2f}" text-anchor="{side}">next pin</text>'
-        f'<text x="2" y="4">{SCALE:g}:1, millimeters in the table</text>'
+        f'<text x="{beside:.2f}" y="{y + 1:.2f}" text-anchor="{anchor}">a = b = 0</text>'
+        f'<text x="{beside:.2f}" y="{top + 1:.2f}" text-anchor="{anchor}">next pin</text>'
+        f'<path d="M{x:.2f} {y - AXIS:.2f}V{y:.2f}H{tip:.2f}" stroke="{INK}" stroke-width="0.3" '
+        'fill="none"/>'
+        f'<text x="{x + 0.8:.2f}" y="{y - AXIS + 1:.2f}">a</text>'
+        f'<text x="{tip:.2f}" y="{y + 3:.2f}" text-anchor="middle">b</text>'
+        f'<text x="2" y="5">{SCALE:g}:1</text>'
     )

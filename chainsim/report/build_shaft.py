@@ -32,6 +32,9 @@ ROOM_SPAN = 20.0
 ASSEMBLY_PLAY = 0.3e-3
 """End play for assembly at a coupling, beside expansion [m]; common practice, no source."""
 
+BEND_PERCENT = 1.0
+"""How far a driven axle may bend under the chain [percent of the pitch]; our choice."""
+
 BENDING_LIMIT = 100e6
 """Bending stress that a turning plain steel axle may see [Pa]; common practice, no source."""
 
@@ -50,7 +53,8 @@ def shaft_part(case: Case) -> Part:
     shaft = case.scenario.drive.shaft
     lines = list(_axle_lines(case))
     if shaft.length is not None and shaft.diameter is not None:
-        lines += [*_size_lines(case), *_support_lines(case)]
+        lines += _size_lines(case, shaft.length, shaft.diameter)
+        lines += _support_lines(case, shaft.length, shaft.diameter)
         text = "Supports are spaced evenly, ends included. Whirl is a closed form, never simulated."
     else:
         lines += _choice_lines(case)
@@ -73,36 +77,43 @@ def _axle_lines(case: Case) -> Iterator[Line]:
         load, source = float(math.hypot(*case.sized.running.hub[case.driven])), CLOSED_ONLY
     yield Line(f"axle of {part.name}", diameter, "m", note="plain round steel taken here")
     if load:
-        reach = BENDING_LIMIT * math.pi * diameter**3 / (32.0 * load)
+        bend = 0.01 * BEND_PERCENT * case.scenario.chain.pitch
+        strong = BENDING_LIMIT * math.pi * diameter**3 / (32.0 * load)
+        stiff = (3.0 * bend * _bending_stiffness(diameter, "steel") / load) ** (1.0 / 3.0)
         note = (
-            f"bending stays below {BENDING_LIMIT / 1e6:.0f} MPa under the load on the axle, its peak "
-            f"of {load:.3g} N; support both ends where the sprocket stands further out"
+            f"at {load:.3g} N on the axle it bends by less than {1e3 * bend:.2g} mm and stays "
+            f"below {BENDING_LIMIT / 1e6:.0f} MPa; further out, hold it at both ends"
         )
-        yield Line("sprocket from its bearing, at most", min(reach, 0.5), "m", source, note)
+        yield Line("sprocket from its bearing, at most", min(strong, stiff), "m", source, note)
 
 
-def _size_lines(case: Case) -> Iterator[Line]:
+def _bending_stiffness(diameter: float, material: str) -> float:
+    """Young's modulus times second moment of area of a round bar [N m2]."""
+    return SHAFT_MATERIALS[material].modulus * math.pi * diameter**4 / 64.0
+
+
+def _size_lines(case: Case, length: float, diameter: float) -> Iterator[Line]:
     shaft = case.scenario.drive.shaft
-    material = SHAFT_MATERIALS[shaft.material or "steel"]
-    shear = SHEAR_OVER_MODULUS * material.modulus
+    material = shaft.material or "steel"
+    shear = SHEAR_OVER_MODULUS * SHAFT_MATERIALS[material].modulus
     torque = _torque(case)
-    yield Line("shaft: diameter", shaft.diameter, "m", note=shaft.material or "steel")
-    yield Line("shaft: length", shaft.length, "m")
+    yield Line("shaft: diameter", diameter, "m", note=material)
+    yield Line("shaft: length", length, "m")
     if torque is not None:
-        stiffness = cf.torsional_stiffness(shaft.diameter, shaft.length, shear)
+        stiffness = cf.torsional_stiffness(diameter, length, shear)
         yield Line("shaft: twist, running", torque / stiffness, "rad", CLOSED)
-        stress = cf.torsional_stress(torque, shaft.diameter)
+        stress = cf.torsional_stress(torque, diameter)
         yield Line("shaft: shear stress, running", stress, "Pa", CLOSED)
     if shaft.backlash:
         yield Line("shaft: backlash of gearing and couplings", shaft.backlash, "rad")
 
 
-def _support_lines(case: Case) -> Iterator[Line]:
+def _support_lines(case: Case, length: float, diameter: float) -> Iterator[Line]:
     shaft = case.scenario.drive.shaft
     material = SHAFT_MATERIALS[shaft.material or "steel"]
-    span = shaft.length / (shaft.supports - 1)
-    whirl = cf.whirl_speed(shaft.diameter, span, material.modulus, material.density)
-    widest = cf.support_distance(shaft.diameter, material.modulus, material.density, case.rate)
+    span = length / (shaft.supports - 1)
+    whirl = cf.whirl_speed(diameter, span, material.modulus, material.density)
+    widest = cf.support_distance(diameter, material.modulus, material.density, case.rate)
     yield Line("shaft: supports, ends included", shaft.supports, "1")
     yield Line("shaft: distance of the supports", span, "m", CLOSED, "", None, widest)
     yield Line(
@@ -113,11 +124,13 @@ def _support_lines(case: Case) -> Iterator[Line]:
         "never simulated",
         WHIRL_RESERVE,
     )
-    fewest = math.ceil(shaft.length / widest) + 1
+    fewest = math.ceil(length / widest) + 1
     yield Line("shaft: fewest supports for that", max(2, fewest), "1", CLOSED, "more bind sooner")
     torque = _torque(case)
     if shaft.supports > 2 and torque is not None:
-        offset = alignment_tolerance(case, span, torque)
+        friction = case.scenario.sprocket[case.driven].bearing_friction
+        bending = _bending_stiffness(diameter, shaft.material or "steel")
+        offset = alignment_tolerance(bending, span, friction * 0.5 * diameter, torque)
         note = (
             f"one support this far off the line of its neighbors adds {100 * ADDED_DRAG:.0f} % to "
             "the running torque (our choice): 6 E I δ / L³ on it, half on either neighbor"
@@ -125,38 +138,39 @@ def _support_lines(case: Case) -> Iterator[Line]:
         yield Line("shaft: each support in line within ±", offset, "m", CLOSED, note)
 
 
-def alignment_tolerance(case: Case, span: float, torque: float) -> float:
-    """Return how far one support may stand off the line of its two neighbors.
+def alignment_tolerance(
+    bending_stiffness: float, span: float, friction_arm: float, torque: float
+) -> float:
+    """Return how far one support of a shaft may stand off the line of its two neighbors.
 
     Parameters
     ----------
-    case : Case
-        The lift, its shaft stated.
+    bending_stiffness : float
+        Young's modulus times second moment of area ``E I`` [N m2].
     span : float
-        Distance of the supports [m].
+        Distance of the supports ``L`` [m].
+    friction_arm : float
+        Coefficient of friction of the bearings times their radius [m].
     torque : float
         Running torque [N m].
 
     Returns
     -------
     float
-        Offset [m] whose bearing forces cost `ADDED_DRAG` of the torque in friction.
+        Offset ``δ`` [m] whose bearing forces cost `ADDED_DRAG` of the torque.
 
     Notes
     -----
-    Two spans, pinned at their far ends and pushed at the middle by ``δ``: ``F = 48 E I δ/(2 L)³``,
-    with half of it at either end, and ``2 F μ r`` of friction in all.
+    Two spans, pinned at their far ends and pushed at the middle: ``F = 48 E I δ / (2 L)³`` there
+    and half of it at either end, so that friction takes ``2 F μ r``.
 
     References
     ----------
     *Shigley's Mechanical Engineering Design*, 9th edition, table A-9, simple supports with center
     load (from memory).
     """
-    shaft = case.scenario.drive.shaft
-    modulus = SHAFT_MATERIALS[shaft.material or "steel"].modulus
-    friction = case.scenario.sprocket[case.driven].bearing_friction
-    stiffness = 6.0 * modulus * math.pi * shaft.diameter**4 / 64.0 / span**3
-    return ADDED_DRAG * torque / (2.0 * stiffness * friction * 0.5 * shaft.diameter)
+    force_per_offset = 48.0 * bending_stiffness / (2.0 * span) ** 3
+    return ADDED_DRAG * torque / (2.0 * force_per_offset * friction_arm)
 
 
 def _choice_lines(case: Case) -> Iterator[Line]:

@@ -46,9 +46,7 @@ def stamps(case: Case) -> list[Stamp]:
     if case.run is None:
         return [
             *found,
-            Stamp(
-                NOT_SIMULATED, "Nothing of this lift was simulated: the figures are closed forms."
-            ),
+            Stamp(NOT_SIMULATED, "Nothing was simulated: all figures are closed forms."),
         ]
     if case.situations_not_run:
         listed = ", ".join(case.situations_not_run)

@@ -4,12 +4,24 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator
+from functools import partial
+
+import numpy as np
 
 from chainsim import closed_forms as cf
 from chainsim.analysis.chain_motion import excursion
+from chainsim.analysis.survey import Survey
 from chainsim.errors import CallError
 from chainsim.report.build_case import Case
-from chainsim.report.build_line import CLOSED, PRACTICE, SIMULATED, UNKNOWN, Line, Part
+from chainsim.report.build_line import (
+    CLOSED,
+    PRACTICE,
+    STATED,
+    UNKNOWN,
+    Line,
+    Part,
+    ran_or_reckoned,
+)
 
 RUN_OUT_SHARE = 0.1
 """Share of the polygon's own speed variation that run-out may add (dimensionless); our choice."""
@@ -19,6 +31,20 @@ PITCH_SHARE = 0.002
 common practice, no source."""
 
 ONE_DEGREE = math.radians(1.0)
+LIP_STEP = 0.5e-3
+"""Height of lip that a cost is told for [m]."""
+
+RULER = 0.02e-3
+"""Least run-out that is asked for [m]: less is not measured in a workshop."""
+
+LINKS_MEASURED = 24
+"""Links over which a pitch is measured (dimensionless)."""
+
+OUT_OF_PLANE = 0.5e-3
+"""Offset of one sprocket's face from the other's to accept [m]; common practice, no source."""
+
+PARALLEL = 2e-3
+"""Axles out of parallel to accept (dimensionless); common practice, no source."""
 
 
 def tolerances_part(case: Case) -> Part:
@@ -34,7 +60,7 @@ def tolerances_part(case: Case) -> Part:
         *_pitch_lines(case),
         *_pocket_lines(case),
         *_room_lines(case),
-        *_plane_lines(case),
+        *_plane_lines(),
     ]
     text = "Hold these; other dimensions take what the workshop does without thinking."
     return Part("tolerances", "Tolerances that matter", text, tuple(lines))
@@ -44,16 +70,14 @@ def _wheel_lines(case: Case) -> Iterator[Line]:
     for wheel, part in zip(case.lift.wheels, case.scenario.sprocket, strict=True):
         if not wheel.teeth:
             continue
-        variation = cf.speed_variation(wheel.teeth)
-        off = 0.5 * RUN_OUT_SHARE * variation * wheel.radius
-        simulated = f"; simulated with {1e3 * part.eccentricity:.2g} mm"
+        off = max(0.5 * RUN_OUT_SHARE * cf.speed_variation(wheel.teeth) * wheel.radius, RULER)
         yield Line(
-            f"{wheel.name}: pitch circle off the axle by at most",
-            max(off, part.eccentricity),
+            f"{wheel.name}: pitch circle off the axle",
+            part.eccentricity,
             "m",
-            CLOSED,
-            f"then the speed varies by {100 * RUN_OUT_SHARE:.0f} % of what {wheel.teeth} teeth do "
-            f"anyway (our choice){simulated}",
+            STATED,
+            f"at the band's end the speed varies by {100 * RUN_OUT_SHARE:.0f} % of what "
+            f"{wheel.teeth} teeth make it vary anyway (our choice)",
             None,
             max(off, part.eccentricity),
             digits=2,
@@ -61,15 +85,15 @@ def _wheel_lines(case: Case) -> Iterator[Line]:
 
 
 def _pitch_lines(case: Case) -> Iterator[Line]:
-    chain = case.scenario.chain
+    new = LINKS_MEASURED * case.scenario.chain.pitch
     yield Line(
-        "pitch of the new chain",
-        chain.pitch,
+        f"length of {LINKS_MEASURED} links of the new chain",
+        new,
         "m",
         PRACTICE,
-        f"measured over 24 links; {100 * PITCH_SHARE:g} % off moves the take-up like wear",
-        chain.pitch * (1.0 - PITCH_SHARE),
-        chain.pitch * (1.0 + PITCH_SHARE),
+        f"{100 * PITCH_SHARE:g} % off moves the take-up like wear",
+        new * (1.0 - PITCH_SHARE),
+        new * (1.0 + PITCH_SHARE),
         digits=5,
     )
 
@@ -78,77 +102,56 @@ def _pocket_lines(case: Case) -> Iterator[Line]:
     balls, carriers = case.scenario.balls, case.scenario.carriers
     if balls is None or carriers is None or case.lift.pocket is None:
         return
-    pocket, gravity = carriers.pocket, case.scenario.frame.gravity
+    pocket, radius = carriers.pocket, 0.5 * balls.diameter
     if pocket.outline is None and pocket.lip > 0.0:
-        try:
-            holds = [
-                cf.lip_acceleration(0.5 * balls.diameter, pocket.lip, gravity, floor_tilt=tilt)
-                for tilt in (pocket.tilt, pocket.tilt - ONE_DEGREE)
-            ]
-            lower = cf.lip_acceleration(
-                0.5 * balls.diameter, 0.9 * pocket.lip, gravity, floor_tilt=pocket.tilt
+        holds, flatter, lower = (
+            _held(radius, lip, tilt, case.scenario.frame.gravity)
+            for lip, tilt in (
+                (pocket.lip, pocket.tilt),
+                (pocket.lip, pocket.tilt - ONE_DEGREE),
+                (pocket.lip - LIP_STEP, pocket.tilt),
             )
-        except CallError:
-            return
-        yield Line(
-            "pocket: each degree less of tilt costs the seat",
-            holds[0] - holds[1],
-            "m s-2",
-            CLOSED,
-            f"of {holds[0]:.1f} m/s² sideways that it holds standing still; the lift out of plumb "
-            "counts alike",
-            digits=2,
         )
-        yield Line(
-            "pocket: a lip lower by a tenth costs the seat",
-            holds[0] - lower,
-            "m s-2",
-            CLOSED,
-            digits=2,
-        )
-    reserve = case.simulated(lambda s: s.extremes["seat_reserve"].value)
-    if reserve is not None:
-        note = "smallest of the run; all of these come out of it"
-        yield Line("pocket: sideways acceleration to spare", reserve, "m s-2", SIMULATED, note)
+        note = "standing still, pushed slowly against its lip; what follows comes off this"
+        yield Line("pocket: holds a ball against, sideways", holds, "m s-2", CLOSED, note)
+        note = "the whole lift out of plumb counts alike"
+        yield Line("pocket: each degree of tilt less costs", holds - flatter, "m s-2", CLOSED, note)
+        item = f"pocket: each {1e3 * LIP_STEP:g} mm of lip less costs"
+        yield Line(item, holds - lower, "m s-2", CLOSED)
+    line = Line("pocket: smallest reserve while running", None, "m s-2")
+    yield ran_or_reckoned(line, case.extreme("seat_reserve"))
+
+
+def _held(radius: float, lip: float, tilt: float, gravity: float) -> float:
+    """Sideways acceleration that a seat holds [m/s2]; NaN where its lip holds nothing or all."""
+    try:
+        held = cf.lip_acceleration(radius, lip, gravity, floor_tilt=tilt)
+    except CallError:
+        return math.nan
+    return held if math.isfinite(held) else math.nan
 
 
 def _room_lines(case: Case) -> Iterator[Line]:
     clearance = case.scenario.limits.clearance
     for name, free in (("inward", clearance.inward), ("outward", clearance.outward)):
-        used = case.simulated(lambda s, name=name: _most(s, name))
+        used = case.simulated(partial(_most, name=name))
         if free is None and used is None:
             continue
-        yield Line(
-            f"room beside the strands, {name}",
-            used,
-            "m",
-            SIMULATED if used is not None else UNKNOWN,
-            "what the line of the pins used; carriers come on top",
-            None,
-            free,
-        )
+        note = "used by the line of the pins in steady running; carriers and balls come on top"
+        line = Line(f"room beside the strands, {name}", None, "m", "", note)
+        yield ran_or_reckoned(line, used)._replace(high=free)
 
 
-def _most(s, name: str) -> float:
+def _most(s: Survey, name: str) -> float | None:
     """Largest excursion of all strands to one side in steady running [m]."""
-    peaks = []
-    for k in range(len(s.strands)):
-        values = getattr(excursion(s, k), name)[s.is_steady]
-        peaks.append(float(values[values == values].max()))
-    return max(peaks)
+    sides = [getattr(excursion(s, k), name)[s.is_steady] for k in range(len(s.strands))]
+    known = np.concatenate(sides)
+    known = known[np.isfinite(known)]
+    return float(known.max()) if known.size else None
 
 
-def _plane_lines(case: Case) -> Iterator[Line]:
-    pitch = case.scenario.chain.pitch
-    note = (
-        f"the model is planar and does not see it; {PRACTICE}: less than the side play of the chain "
-        "on the teeth, found by moving it by hand"
-    )
-    yield Line("sprockets in one plane, straightedge across both", None, "m", UNKNOWN, note)
-    yield Line(
-        "axles parallel",
-        0.25 * pitch,
-        "m/m",
-        PRACTICE,
-        "a quarter of a pitch on a meter; out of the plane nothing is simulated",
-    )._replace(value=2.0e-3)
+def _plane_lines() -> Iterator[Line]:
+    note = f"of the face of one from a straightedge on the other; {UNKNOWN}: the model is planar"
+    yield Line("sprockets in one plane", 0.0, "m", PRACTICE, note, None, OUT_OF_PLANE, digits=2)
+    note = f"out of the plane; {UNKNOWN}: the model is planar"
+    yield Line("axles parallel", 0.0, "m/m", PRACTICE, note, None, PARALLEL, digits=2)

@@ -1,4 +1,4 @@
-"""Parts of the build sheet as the page shows them: lists, and tables with a column for each part."""
+"""Parts of the build sheet as the page shows them: lists, and tables with columns by part."""
 
 from __future__ import annotations
 
@@ -31,7 +31,7 @@ def part_view(part: Part) -> dict[str, Any]:
         "drawings": [(caption, Markup(svg)) for caption, svg in part.drawings],
         "matrix": matrix(columned),
         "rows": [
-            (line.item, line.text, line.band, line.source, line.note, "NOT" in line.source)
+            (line.item, line.text, line.band, line.source, line.note, "" if line.unit else "words")
             for line in plain
         ],
         "has_bands": any(line.band for line in plain),

@@ -1,4 +1,4 @@
-"""Wear on the build sheet: what growth of the chain does to its ride on the teeth and its travel."""
+"""Wear on the build sheet: what growth of the chain does to its ride on the teeth and travel."""
 
 from __future__ import annotations
 
@@ -24,9 +24,9 @@ def wear_part(case: Case) -> Part:
     return Part(
         "wear",
         "Wear of the chain",
-        "By growth of the pitch, all links alike, not by hours: how fast a chain grows is known only "
-        "from measuring it. Measure 24 links taut; growth is the excess over 24 pitches by 24 "
-        "pitches.",
+        "By growth of the pitch, all links alike, not by hours: how fast a chain grows is known "
+        "only from measuring it. Growth is by how much a length of links is longer than when new, "
+        "as a share of that.",
         (*_limit_lines(case), *lines),
     )
 
@@ -46,15 +46,15 @@ def _limit_lines(case: Case) -> list[Line]:
             new * (1.0 + limit),
             "m",
             CLOSED,
-            f"growth {100 * limit:.2g} %: what service guides of steel roller chain say, or the "
-            "scenario's allowance where it is less; the maker's word comes first",
+            f"{100 * limit:.2g} % growth: what service guides of steel roller chain say, or the "
+            "scenario's allowance where it is less; the chain maker's word comes first",
             digits=5,
         ),
     ]
-    for wheel in case.lift.wheels:
-        if wheel.teeth:
-            tip = cf.growth_at_tip(wheel.teeth)
-            note = "all pins sharing a standard tooth"
+    for wheel, tooth in zip(case.lift.wheels, case.lift.teeth, strict=True):
+        if tooth is not None:
+            tip = tooth.outer_radius / tooth.pitch_radius - 1.0
+            note = "all pins on the wheel sharing the load; the chain skips long before"
             item = f"growth at which pins reach the tips of {wheel.name}"
             lines.append(Line(item, tip, "share", CLOSED, note))
     note = "chainsim limit FILE wear simulates it"

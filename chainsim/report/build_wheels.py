@@ -10,7 +10,16 @@ from chainsim import closed_forms as cf
 from chainsim.analysis.axles import axle_loads
 from chainsim.errors import CallError
 from chainsim.report.build_case import Case
-from chainsim.report.build_line import DRAWN, UNKNOWN, Line, Part, ran_or_reckoned
+from chainsim.report.build_line import (
+    DRAWN,
+    SIMULATED,
+    STATED,
+    UNKNOWN,
+    Line,
+    Part,
+    place_text,
+    ran_or_reckoned,
+)
 from chainsim.report.layout_notes import mount_text
 from chainsim.report.outline import outline_svg
 
@@ -28,8 +37,9 @@ def sprockets_part(case: Case) -> Part:
         "sprockets",
         "Sprockets",
         "The outline drawn here is the one that was calculated with, at 1:1: print without scaling "
-        "and measure the square. Kerf is not allowed for. Axle and bore are one diameter: choose "
-        "the fit, a press or key on a driven axle, a running fit on an idle one.",
+        "and measure the square; circles are pins in their seats, dashes the polygon through them. "
+        "Kerf is not allowed for. Axle and bore are one diameter: choose the fit, a press or key "
+        "on the driven axle, a running fit or a bearing on an idle one.",
         tuple(line for column in columns for line in column),
         tuple(_outlines(case)),
     )
@@ -39,7 +49,7 @@ def _sprocket_lines(case: Case, k: int) -> Iterator[Line]:
     part, wheel, tooth = case.scenario.sprocket[k], case.lift.wheels[k], case.lift.teeth[k]
     name, pins = wheel.name, case.scenario.chain.roller_diameter
 
-    def line(item: str, value, unit: str = "", source: str = DRAWN) -> Line:
+    def line(item: str, value: float | str | None, unit: str = "", source: str = DRAWN) -> Line:
         return Line(item, value, unit, source, subject=name, digits=5)
 
     role = "driven" if k == case.driven else "idles"
@@ -55,6 +65,9 @@ def _sprocket_lines(case: Case, k: int) -> Iterator[Line]:
     yield line("pressure angle", tooth.pressure_angle if tooth else None, "rad")
     yield line("radius of a tooth tip", tooth.corner_radius if tooth else None, "m")
     yield line("bore and axle", part.axle_diameter, "m")
+    yield line("thickness", "inner width of the chain, less its side play", "", UNKNOWN)
+    yield line("friction of chain on tooth, calculated with", part.tooth.friction, "1", STATED)
+    yield line("friction of its bearing, calculated with", part.bearing_friction, "1", STATED)
     links = case.lift.n_links
     turns = int(np.lcm(links, wheel.teeth)) // links if wheel.teeth else None
     yield line("a marked link meets a marked tooth again after turns of the chain", turns, "1")
@@ -92,8 +105,8 @@ def axles_part(case: Case) -> Part:
     return Part(
         "axles",
         "Axles",
-        f"Places are right and up from the drawing's origin, seen from {view}. Where a movable axle "
-        "comes to stand is the chain's doing: check it, do not set it.",
+        f"Places are right and up from the drawing's origin, seen from {view}. Where a movable "
+        "axle comes to stand is the chain's doing: check it, do not set it.",
         (*(line for column in columns for line in column), *_distance_lines(case)),
     )
 
@@ -101,22 +114,37 @@ def axles_part(case: Case) -> Part:
 def _axle_lines(case: Case, k: int) -> Iterator[Line]:
     part, wheel = case.scenario.sprocket[k], case.lift.wheels[k]
 
-    def line(item: str, value, source: str = DRAWN, unit: str = "") -> Line:
+    def line(item: str, value: str | None, source: str = DRAWN, unit: str = "") -> Line:
         return Line(item, value, unit, source, subject=wheel.name)
 
-    yield line("held by", mount_text(part.mount))
+    yield line("held by", held_text(part.mount))
     yield line("place on the drawing", _place(case, part.center))
     yield line("place with the new chain laid taut", _place(case, case.lift.laid.wheel_center[k]))
     rest = case.simulated(lambda s: s.center[0, k])
-    yield line("place at rest, simulated", None if rest is None else _place(case, rest), UNKNOWN)
+    item = "place at rest, chain stretched by what hangs on it"
+    if rest is None:
+        yield line(item, None, UNKNOWN)
+    else:
+        yield line(item, _place(case, rest), SIMULATED)
     hub = float(np.hypot(*case.sized.running.hub[k])) if case.sized else None
     loads = case.simulated(axle_loads) or [None] * (k + 1)
     mean = loads[k].mean if loads[k] else None
     yield ran_or_reckoned(line("load of the chain on it, running", None, unit="N"), mean, hub)
-    peak = case.simulated(lambda s: s.extremes[f"axle_load.{wheel.name}"].value)
+    peak = case.extreme(f"axle_load.{wheel.name}")
     if peak is None and loads[k]:
         peak = loads[k].peak
     yield ran_or_reckoned(line("peak of that load", None, unit="N"), peak)
+
+
+def held_text(mount) -> str:
+    """Say what holds an axle.
+
+    Parameters
+    ----------
+    mount : Mount
+        The mount's table of the scenario.
+    """
+    return "a fixed place in the frame" if mount.kind == "fixed" else mount_text(mount)
 
 
 def _distance_lines(case: Case) -> Iterator[Line]:
@@ -160,5 +188,4 @@ def ride_height(case: Case, k: int, growth: float) -> float | None:
 
 
 def _place(case: Case, center) -> str:
-    x, y = case.across(float(center[0])), float(center[1])
-    return f"{1e3 * x + 0.0:.1f}, {1e3 * y + 0.0:.1f} mm".replace("-0.0", "0.0")
+    return place_text(case.across(float(center[0])), float(center[1]))

@@ -76,6 +76,7 @@ def show_verdict(rec: Any) -> None:
     from chainsim.report.text import findings_of, readable
 
     found, findings = situations(rec), findings_of(rec)
+    show(f"\n{rec.scenario.title or rec.scenario.stem}")
     show(heading(readable(verdict(findings, found))), "", findings_table(findings))
     show("", notes_table(findings))
     show(

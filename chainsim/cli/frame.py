@@ -23,6 +23,9 @@ from chainsim.errors import (
 HOLDS, FAILS = 0, 1
 """Exit status where every judged finding holds or is close, and where one fails (dimensionless)."""
 
+NO_SPACE = (errno.ENOSPC, errno.EDQUOT, errno.EFBIG)
+"""Error numbers of a full disk, a full share of it, and a file that may not grow further."""
+
 TRACEBACK = "CHAINSIM_TRACEBACK"
 """Environment variable that lets faults of chainsim itself through with their traceback."""
 
@@ -155,8 +158,9 @@ def _is_full(error: BaseException | None) -> bool:
     """Whether an error, or what caused it, is a full disk; HDF5 tells that in its text alone."""
     if error is None:
         return False
-    full = getattr(error, "errno", None) in (errno.ENOSPC, errno.EDQUOT)
-    return full or os.strerror(errno.ENOSPC) in str(error) or _is_full(error.__cause__)
+    is_full = getattr(error, "errno", None) in NO_SPACE
+    told = any(os.strerror(number) in str(error) for number in NO_SPACE)
+    return is_full or told or _is_full(error.__cause__)
 
 
 def _words(error: BaseException) -> str:

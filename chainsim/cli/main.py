@@ -7,6 +7,7 @@ import sys
 import click
 
 from chainsim import __version__
+from chainsim.cli.build import build
 from chainsim.cli.check import check
 from chainsim.cli.compare import compare
 from chainsim.cli.limit import limit
@@ -39,7 +40,7 @@ def commands() -> None:
     """
 
 
-for _command in (new, check, run, report, compare, sweep, limit, ready):
+for _command in (new, check, run, report, compare, sweep, limit, build, ready):
     commands.add_command(_command)
 
 

@@ -32,6 +32,7 @@ class RunProgress:
         self._stream = stream or sys.stderr
         self._is_live = self._stream.isatty()
         self._start: tuple[float, float] | None = None
+        self._last = (0.0, 0.0)
         self._shown = 0.0
 
     def __call__(self, simulated: float, duration: float, wall: float) -> None:
@@ -47,6 +48,7 @@ class RunProgress:
         if self._start is None:
             self._start = (simulated, wall)
             self._shown = wall
+        self._last = (simulated, wall)
         if wall - self._shown < (REDRAWN_EVERY if self._is_live else EVERY):
             return
         self._shown = wall
@@ -75,10 +77,15 @@ class RunProgress:
         return f"{text}, {speed:.3g} simulated s per s, {left} left"
 
     def end(self) -> None:
-        """Wipe the line that is redrawn."""
-        if self._is_live and self._start is not None:
-            self._stream.write(CLEAR)
-            self._stream.flush()
+        """Say how much was simulated, and how fast."""
+        if self._start is None:
+            return
+        simulated, wall = self._last
+        text = f"{self._name}: {simulated:.1f} s simulated in {wall:.1f} s"
+        if wall > 0.0:
+            text += f", {simulated / wall:.3g} simulated s per s"
+        self._stream.write(f"{CLEAR if self._is_live else ''}{text}\n")
+        self._stream.flush()
 
 
 def will_compile() -> bool:

@@ -122,7 +122,8 @@ def show_places(rec: Any, page: Path | None) -> None:
     """Print where the recording and the page are."""
     show(f"\nRecording  {shown_path(rec.path)}")
     if page is not None:
-        show(f"Report     {shown_path(page)}  (motion, plots, cautions; what the model cannot see)")
+        show(f"Report     {shown_path(page)}")
+        show("The report shows the motion, what the model cannot see, and the cautions.")
 
 
 def _studies(scenario: Any, data: dict[str, Any], as_json: bool, options: dict[str, Any]) -> int:

@@ -39,7 +39,7 @@ def raising_step(scenario: Any) -> tuple[float, int]:
     n_links : int
         Links of the present loop (dimensionless).
     """
-    from chainsim.model import build_lift
+    from chainsim.model.lift import build_lift
 
     lift = build_lift(scenario)
     carriers = scenario.carriers

@@ -142,7 +142,7 @@ def _slack(scenario: Any) -> Question:
         raise CallError("limit slack: this lift takes up its own slack; ask for `takeup` instead")
     tail = min(scenario.sprocket, key=lambda sprocket: sprocket.center[1])
     x, y = tail.center
-    from chainsim.model import build_lift
+    from chainsim.model.lift import build_lift
 
     n_links = build_lift(scenario).n_links
 

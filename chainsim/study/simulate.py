@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import functools
+import os
+import shutil
 from dataclasses import asdict
 from typing import Any
 
@@ -31,12 +33,18 @@ def simulate(job: Job) -> dict[str, Any]:
     """
     from chainsim.run import run
 
-    out = recording_path(job)
-    if out is not None:
-        out.parent.mkdir(parents=True, exist_ok=True)
-        out.unlink(missing_ok=True)
-    recording = run(scenario_of(job), out=out, keep="all" if out else "summary")
-    return result_of(recording)
+    scenario, kept = scenario_of(job), recording_path(job)
+    if kept is None:
+        return result_of(run(scenario, keep="summary"))
+    # A folder of its own until the recording is whole: only then it takes its place.
+    folder = kept.with_name(f"{job.id}.partial")
+    shutil.rmtree(folder, ignore_errors=True)
+    folder.mkdir(parents=True)
+    recording = run(scenario, out=folder)
+    result = result_of(recording)
+    os.replace(recording.path, kept)
+    shutil.rmtree(folder)
+    return result
 
 
 def warm(job: Job) -> None:

@@ -55,7 +55,7 @@ def verify_step(scenario: Any, run: Callable[[Any], Any]) -> list[Drift]:
         The lift.
     run : callable
         Takes a scenario and gives a recording that has `findings` and, among its `attrs`,
-        `step`: the inner step that was used [s].
+        `inner_step`: the step that was used [s].
 
     Returns
     -------
@@ -68,7 +68,7 @@ def verify_step(scenario: Any, run: Callable[[Any], Any]) -> list[Drift]:
         If the recording does not tell its step.
     """
     full = run(scenario)
-    step = full.attrs.get("step")
+    step = full.attrs.get("inner_step")
     if not step:
         raise RunError("the recording does not tell its step, so it cannot be halved")
     recordings = [full]

@@ -14,6 +14,7 @@ import contextlib
 import errno
 import json
 import os
+import shutil
 from collections.abc import Container, Iterator, Sequence
 from pathlib import Path
 
@@ -125,12 +126,15 @@ class Store:
         Returns
         -------
         int
-            Number of files removed (dimensionless).
+            Number of files and folders removed (dimensionless).
         """
         unfinished = self.folder.glob(f"{_RUNS}/*/*{_UNFINISHED}*")
         left = [path for path in unfinished if path.name.partition(".")[0] in runs]
         for path in left:
-            path.unlink(missing_ok=True)
+            if path.is_dir():
+                shutil.rmtree(path, ignore_errors=True)
+            else:
+                path.unlink(missing_ok=True)
         return len(left)
 
 

@@ -149,7 +149,7 @@ class MadeRecording:
 def second_order_run(scenario):
     step = scenario.run.step or 4e-5
     return MadeRecording(
-        [MadeFinding("a", 1.0 + 3e5 * step**2), MadeFinding("b", 2.0)], {"step": step}
+        [MadeFinding("a", 1.0 + 3e5 * step**2), MadeFinding("b", 2.0)], {"inner_step": step}
     )
 
 
@@ -165,7 +165,7 @@ def test_an_outcome_that_turns_with_the_step_is_told():
     def run(scenario):
         coarse = scenario.run.step is None
         return MadeRecording(
-            [MadeFinding("a", 1.0, "fails" if coarse else "holds")], {"step": 1e-5}
+            [MadeFinding("a", 1.0, "fails" if coarse else "holds")], {"inner_step": 1e-5}
         )
 
     assert verify_step(lift(), run)[0].turned

@@ -83,8 +83,11 @@ def test_leftovers_of_killed_workers_are_removed_but_not_those_of_others(store):
     other = path.with_name("ab99.lift.h5.partial")
     for left in (mine, other):
         left.write_text("half")
-    assert store.remove_unfinished({"ab12"}) == 1
-    assert not mine.exists() and other.exists()
+    folder = path.with_name("ab12.partial")
+    folder.mkdir()
+    (folder / "lift.lift.h5.partial").write_text("half")
+    assert store.remove_unfinished({"ab12"}) == 2
+    assert not mine.exists() and not folder.exists() and other.exists()
     assert list(store.runs()) == ["ab12"]
 
 

@@ -131,6 +131,8 @@ def _mass_of_link(scenario: Any) -> float:
 
 def _takeup(scenario: Any) -> Estimate:
     sprocket = takeup_sprocket(scenario)
+    if sprocket.mount.kind == "arm":
+        return Estimate(None, "an arm pulls by its leverage, which the closed form leaves out")
     tail = _tail(scenario)
     driven: Literal["head", "tail"] = "tail" if scenario.drive.sprocket == tail.name else "head"
     payload = fullest_mass(scenario)
@@ -173,7 +175,9 @@ def _speed(scenario: Any) -> Estimate:
 
 def _height(scenario: Any) -> Estimate:
     tail = _tail(scenario)
-    if scenario.drive.sprocket != tail.name or tail.mount.kind not in ("hung", "sliding"):
+    if tail.mount.kind not in ("hung", "sliding"):
+        return Estimate(None, "the closed form is that of a tail that hangs in the chain")
+    if scenario.drive.sprocket != tail.name:
         return Estimate(None, "driven at the head, height does not enter the free body")
     if scenario.carriers is None or scenario.carriers.at is not None:
         return Estimate(None, "with a fixed number of balls, height does not enter the free body")

@@ -17,6 +17,7 @@ CLOSED_ONLY = f"closed form, {UNKNOWN}"
 """How a value is known. What only a run can tell is `CLOSED_ONLY` or `UNKNOWN` without one."""
 
 NO_VALUE = "–"
+NO_BREAK = "\u00a0"
 
 ROUNDING = 1e-6
 """Size below which a number is printed as none, in the sheet's unit: millionths of a millimeter."""
@@ -92,18 +93,21 @@ class Line(NamedTuple):
         """The value with its unit."""
         if not self.is_known:
             return UNKNOWN if self.source == UNKNOWN else NO_VALUE
-        return f"{self.number} {self.sheet_unit}".strip()
+        return self._with_unit(self.number)
 
     @property
     def band(self) -> str:
         """The band to accept, with its unit; empty where there is none."""
         low, high = self.shown(self.low), self.shown(self.high)
         if low and high:
-            return f"{low} to {high} {self.sheet_unit}".strip()
+            return f"{low} to {self._with_unit(high)}" if low != high else self._with_unit(low)
         if low or high:
-            word = "at least" if low else "at most"
-            return f"{word} {low or high} {self.sheet_unit}".strip()
+            return f"{'at least' if low else 'at most'} {self._with_unit(low or high)}"
         return ""
+
+    def _with_unit(self, number: str) -> str:
+        """Add the sheet's unit to a number, with spaces that do not break."""
+        return f"{number} {self.sheet_unit}".strip().replace(" ", NO_BREAK) if self.unit else number
 
     def shown(self, value: float | str | None) -> str:
         """Write a value in the sheet's unit.

@@ -7,7 +7,7 @@ from collections.abc import Iterator
 
 from chainsim.report.build_case import Case
 from chainsim.report.build_drive import wanted_torques
-from chainsim.report.build_line import DRAWN, PRACTICE, Line, Part
+from chainsim.report.build_line import CLOSED_ONLY, DRAWN, PRACTICE, SIMULATED, Line, Part
 from chainsim.report.build_spares import spare_parts
 from chainsim.report.build_takeup import movable_axles, travel_of
 from chainsim.report.build_wheels import held_text
@@ -15,7 +15,7 @@ from chainsim.units import format_si
 
 BALLS_BESIDE = 2.0
 """Balls on the way round beside those that ride, as a share of these (dimensionless): a track
-brings them back; our choice."""
+brings them back; common practice, no source."""
 
 
 def order_part(case: Case) -> Part:
@@ -109,7 +109,8 @@ def _drive_lines(case: Case) -> Iterator[Line]:
         need = f"{rpm:.1f} rev/min under load"
         if torques is not None:
             need += f", {1e3 * torques[0]:.3g} mN m all day, {1e3 * torques[1]:.3g} mN m at stall"
-        yield Line("gearmotor", 1, "1", DRAWN, f"{need}; see motor duty")
+        source = SIMULATED if case.run is not None else CLOSED_ONLY
+        yield Line("gearmotor", 1, "1", source, f"{need}; see motor duty")
     else:
         motor = drive.motor
         yield Line(
@@ -149,9 +150,9 @@ def _ball_lines(case: Case) -> Iterator[Line]:
     count = math.ceil((1.0 + BALLS_BESIDE) * aboard)
     note = (
         f"{1e3 * balls.diameter:g} mm {balls.material or ''}, {format_si(balls.mass, 'mass')}; "
-        f"{aboard:.1f} ride at a time, the rest is on the way round ({PRACTICE})"
+        f"{aboard:.1f} ride at a time, twice as many are taken to be on the way round"
     )
-    yield Line("balls", count, "1", DRAWN, note)
+    yield Line("balls", count, "1", PRACTICE, note)
     if balls.discharge is not None:
         mouth = f"mouth {1e3 * balls.discharge.mouth:g} mm"
         yield Line("discharge chute", 1, "1", DRAWN, f"{mouth}; its place is told with the balls")

@@ -16,7 +16,7 @@ from chainsim.report.style import FAINT, GRID, INK, STEEL
 SCALE = 2.0
 """Paper over part (dimensionless)."""
 
-ROOM = 22.0
+ROOM = 20.0
 """Paper round the drawing [mm]."""
 
 TEXT = 3.0
@@ -107,6 +107,7 @@ def pocket_svg(lift: Lift, roller_diameter: float, mirrored: bool = False) -> st
     words = [_link(paper, pitch, roller), _material(paper, form), _ball(paper, form, radius)]
     words += [_corner(paper(point), k) for k, point in enumerate(form.outline, 1)]
     words.append(_caption(paper, pitch, roller, mirrored))
+    words.append(_axes(height, mirrored))
     return (
         f'<svg xmlns="http://www.w3.org/2000/svg" width="{width:.2f}mm" height="{height:.2f}mm" '
         f'viewBox="0 0 {width:.2f} {height:.2f}" font-family="Liberation Sans, sans-serif" '
@@ -168,13 +169,21 @@ def _caption(paper: Paper, pitch: float, roller: float, mirrored: bool) -> str:
     top = paper(np.array([pitch, 0.0]))[1]
     away, anchor = (1.0, "start") if mirrored else (-1.0, "end")
     beside = x + away * (1e3 * SCALE * roller + 1.5)
-    tip = x - away * AXIS
     return (
         f'<text x="{beside:.2f}" y="{y + 1:.2f}" text-anchor="{anchor}">a = b = 0</text>'
         f'<text x="{beside:.2f}" y="{top + 1:.2f}" text-anchor="{anchor}">next pin</text>'
+        f'<text x="2" y="5">{SCALE:g}:1</text>'
+    )
+
+
+def _axes(height: float, mirrored: bool) -> str:
+    """Directions in which the corners are measured, in a corner of the paper."""
+    x, y = 2.0 + AXIS, height - 3.0
+    tip = x - AXIS if mirrored else x + AXIS
+    return (
         f'<path d="M{x:.2f} {y - AXIS:.2f}V{y:.2f}H{tip:.2f}" stroke="{INK}" stroke-width="0.3" '
         'fill="none"/>'
-        f'<text x="{x + 0.8:.2f}" y="{y - AXIS + 1:.2f}">a</text>'
-        f'<text x="{tip:.2f}" y="{y + 3:.2f}" text-anchor="middle">b</text>'
-        f'<text x="2" y="5">{SCALE:g}:1</text>'
+        f'<text x="{x:.2f}" y="{y - AXIS - 1:.2f}" text-anchor="middle">a</text>'
+        f'<text x="{tip + (-1.5 if mirrored else 1.5):.2f}" y="{y + 1:.2f}" '
+        'text-anchor="middle">b</text>'
     )

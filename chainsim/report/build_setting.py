@@ -52,9 +52,10 @@ def takeup_part(case: Case) -> Part:
     return Part(
         "takeup",
         "Take-up: setting and travel",
-        "The range to accept is a closed form of steady running: below it a strand may go slack, "
-        "above it links come near their strength or the take-up bounces with the teeth. Only the "
-        "setting itself was simulated, if at all.",
+        "The range to accept is a closed form of steady running: below it a strand may go slack "
+        "(twice the slack mass is asked for; of a spring or counterweight as much more as the balls "
+        "weigh), above it links come near their strength or the take-up bounces with the teeth. "
+        "Only the setting itself was simulated, if at all.",
         tuple(lines),
     )
 
@@ -64,23 +65,33 @@ def _setting_lines(case: Case, k: int) -> Iterator[Line]:
     value, unit, item, note = _setting_of(mount)
     least, most = _slack_and_strong(case, k, value)
     avoid = _masses_to_avoid(case, k) if mount.kind not in ("spring", "counterweight") else None
-    low, high = _safe_range(value, least, most, avoid)
+    low, high = _safe_range(value, _safe_low(case, k, value, least), most, avoid)
+    if avoid is not None and avoid[0] < value < avoid[1]:
+        note = f"IT BOUNCES WITH THE TEETH, see below; {note}"
     yield Line(f"{name}: {item}", value, unit, STATED, note, low, high)
     words = "steady running" if least else "steady running; the chain's own weight keeps it taut"
     yield Line(f"{name}: a strand goes slack below", least, unit, CLOSED, words)
     note = f"running and starting reach {100 * SHARE_OF_STRENGTH:.0f} % of the allowable tension"
     yield Line(f"{name}: links come near their strength above", most, unit, CLOSED, note)
     if mount.kind == "spring":
-        yield from _spring_lines(case, k)
+        yield from _spring_lines(case, k, least)
     yield from _bounce_lines(case, name, avoid)
     yield from _tension_lines(case)
 
 
+def _safe_low(case: Case, k: int, value: float, least: float) -> float:
+    """Least setting to accept: well above slack, or as it was calculated with."""
+    if least <= 0.0:
+        return (1.0 - AS_SET) * value
+    if case.scenario.sprocket[k].mount.kind in ("spring", "counterweight"):
+        return least + case.closed.payload / _newtons_per_setting(case.closed, k)
+    return SAFE_HANG * least
+
+
 def _safe_range(
-    value: float, least: float, most: float, avoid: tuple[float, float] | None
+    value: float, low: float, most: float, avoid: tuple[float, float] | None
 ) -> tuple[float, float]:
     """Range round a setting that no closed form speaks against, in its unit."""
-    low = SAFE_HANG * least if least > 0.0 else (1.0 - AS_SET) * value
     if avoid is not None and value <= avoid[0]:
         return min(low, value), min(most, avoid[0])
     if avoid is not None and value >= avoid[1]:
@@ -126,13 +137,14 @@ def _share(sized: Sized, k: int) -> float:
     return abs(float((direction[k] - direction[k - 1]) @ _way(sized, k)))
 
 
-def _spring_lines(case: Case, k: int) -> Iterator[Line]:
+def _spring_lines(case: Case, k: int, least: float) -> Iterator[Line]:
     mount, name = case.scenario.sprocket[k].mount, case.lift.wheels[k].name
     travel, rate = travel_of(case, k), mount.rate or 0.0
     yield Line(f"{name}: rate of the spring", rate, "N/m")
     for what, at in (("new", travel.new), ("worn", travel.new + travel.worn)):
         force = mount.set_force - rate * at
-        yield Line(f"{name}: force of the spring, chain {what}", force, "N", CLOSED)
+        item = f"{name}: force of the spring, chain {what}"
+        yield Line(item, force, "N", CLOSED, "", least if least > 0.0 else None)
 
 
 def _tension_lines(case: Case) -> Iterator[Line]:

@@ -236,10 +236,16 @@ def _stop_lines(case: Case, k: int, low: float, high: float) -> Iterator[Line]:
         yield Line(item, low - SPARE_TRAVEL, "m", PRACTICE, note)
         yield Line(f"{name}: free at its high end, up to", high + SPARE_TRAVEL, "m", PRACTICE, note)
         return
+    growth, worn = wear_allowance(case)[0], abs(travel_of(case, k).worn)
     low_spare, high_spare = low - mount.stops[0], mount.stops[1] - high
     for what, stop, spare in (("low", 0, low_spare), ("high", 1, high_spare)):
-        words = "left" if spare >= 0.0 else "MISSING"
-        note = f"{abs(1e3 * spare):.1f} mm {words} with all of it added"
+        note = f"{1e3 * spare:.1f} mm left with all of it added"
+        if spare < 0.0:
+            at = max(growth * (1.0 + spare / worn), 0.0) if worn else 0.0
+            note = (
+                f"{-1e3 * spare:.1f} mm SHORT with all of it added: reached at "
+                f"{100 * at:.2g} % growth, replace the chain before"
+            )
         yield Line(f"{name}: {what} stop", mount.stops[stop], "m", STATED, note)
 
 

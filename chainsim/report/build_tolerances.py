@@ -119,7 +119,16 @@ def _pocket_lines(case: Case) -> Iterator[Line]:
         item = f"pocket: each {1e3 * LIP_STEP:g} mm of lip less costs"
         yield Line(item, holds - lower, "m s-2", CLOSED)
     line = Line("pocket: smallest reserve while running", None, "m s-2")
-    yield ran_or_reckoned(line, case.extreme("seat_reserve"))
+    yield ran_or_reckoned(line, _smallest_reserve(case))
+
+
+def _smallest_reserve(case: Case) -> float | None:
+    """Smallest seat reserve of the run [m/s2]: the extreme, or what the finding is about."""
+    kept = case.extreme("seat_reserve")
+    if kept is not None:
+        return kept
+    found = (f for f in case.findings if f.name == "balls_stay_seated" and f.unit == "m s-2")
+    return next((f.value for f in found), None)
 
 
 def _held(radius: float, lip: float, tilt: float, gravity: float) -> float:

@@ -8,6 +8,9 @@ from markupsafe import Markup
 
 from chainsim.report.build_line import NO_VALUE, Line, Part
 
+WORDY = 24
+"""Letters (dimensionless) above which a value in words asks for a wider column."""
+
 
 def part_view(part: Part) -> dict[str, Any]:
     """Return a part as the template wants it.
@@ -36,6 +39,7 @@ def part_view(part: Part) -> dict[str, Any]:
         ],
         "has_bands": any(line.band for line in plain),
         "is_check": part.id == "checks",
+        "is_wordy": any(not line.unit and len(line.text) > WORDY for line in plain),
     }
 
 

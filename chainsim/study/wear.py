@@ -8,22 +8,19 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 from chainsim import closed_forms as cf
 from chainsim.analysis import takeup_travel
 from chainsim.errors import CallError, ChainsimError
+from chainsim.model.lift import build_lift
 from chainsim.study.wear_rule import GrowthRule
 
 STEPS = 6
 """Growths that are run, the new chain included (dimensionless), where none are asked for."""
 
-ALLOWED_SHARE = 1.0
-"""Largest growth that is run, by the growth at which service guides replace a chain
-(dimensionless)."""
-
-BAD, GOOD = "fails", "holds"
+FAILS, CLOSE, HOLDS, NOT_COMPLETED = "fails", "close", "holds", "not completed"
 
 
 @dataclass(frozen=True)
@@ -90,12 +87,12 @@ class WearStudy:
     @property
     def first_failure(self) -> WearStep | None:
         """The first step at which a finding fails or the run cannot be completed."""
-        return next((s for s in self.steps if s.outcome in (BAD, "not completed")), None)
+        return next((s for s in self.steps if s.outcome in (FAILS, NOT_COMPLETED)), None)
 
     @property
     def first_close(self) -> WearStep | None:
         """The first step at which a finding is inside its reserve."""
-        return next((s for s in self.steps if s.outcome == "close"), None)
+        return next((s for s in self.steps if s.outcome == CLOSE), None)
 
     @property
     def last_good(self) -> WearStep | None:
@@ -188,19 +185,16 @@ def _study(scenario: Any, steps: list[WearStep], rule: GrowthRule | None) -> Wea
     """Put steps in order, and say how far each has moved the take-ups from the first."""
     ordered = sorted(steps, key=lambda step: step.growth)
     words = rule.text if rule is not None else "all links grow alike; how fast is not known"
-    first = {name: _middle(ends) for name, ends in ordered[0].travel.items()}
-    told = tuple(
-        _with_travel_used(step, {n: _middle(e) - first[n] for n, e in step.travel.items()
-                                 if n in first})
-        for step in ordered
-    )  # fmt: skip
+    first = next((step.travel for step in ordered if step.travel), {})
+    told = tuple(replace(step, travel_used=_used(step.travel, first)) for step in ordered)
     return WearStudy(told, words, replaced_at(scenario))
 
 
-def _with_travel_used(step: WearStep, used: dict[str, float]) -> WearStep:
-    from dataclasses import replace
-
-    return replace(step, travel_used=used)
+def _used(
+    travel: dict[str, tuple[float, float]], first: dict[str, tuple[float, float]]
+) -> dict[str, float]:
+    """How far the middle of each travel has moved from the first one [m; rad]."""
+    return {name: _middle(ends) - _middle(first[name]) for name, ends in travel.items()}
 
 
 def _middle(ends: tuple[float, float]) -> float:
@@ -220,63 +214,65 @@ def _checked(growths: Sequence[float]) -> list[float]:
 
 def _growths(scenario: Any, own: float) -> list[float]:
     """Even steps from the growth that a chain has to the largest one worth running."""
-    last = max(ALLOWED_SHARE * replaced_at(scenario), scenario.limits.wear or 0.0, own)
-    return [own + (last - own) * i / (STEPS - 1) for i in range(STEPS)] if last > own else [own]
+    last = max(replaced_at(scenario), scenario.limits.wear or 0.0)
+    if last <= own:
+        return [own]
+    return [own + (last - own) * i / (STEPS - 1) for i in range(STEPS)]
 
 
 def _step(
     scenario: Any, growth: float, rule: GrowthRule | None, run: Callable[[Any], Any]
 ) -> WearStep:
     """Run a lift at one growth of its chain."""
-    own = float(scenario.chain.growth)
     try:
         grown = scenario.with_values({"chain.growth": growth})
+        blank = _blank(scenario, growth, rule)
         recording = run(grown)
     except ChainsimError as error:
-        return _blank(scenario, growth, rule, str(error))
-    findings = list(recording.findings)
-    fails = tuple(f.name for f in findings if f.outcome == BAD)
-    close = tuple(f.name for f in findings if f.outcome == "close")
-    blank = _blank(scenario, growth, rule, str(recording.stop_reason))
+        return replace(_blank(scenario, growth, rule), stop_reason=str(error))
+    found, extremes = list(recording.findings), dict(recording.extremes)
     travels = takeup_travel(recording) if "mounts/travel" in recording else []
-    extremes = dict(recording.extremes)
-    values = vars(blank) | {
-        "travel": {t.sprocket: (t.low, t.high) for t in travels},
-        "ride_height": {
+    fails = tuple(f.name for f in found if f.outcome == FAILS)
+    close = tuple(f.name for f in found if f.outcome == CLOSE)
+    return replace(
+        blank,
+        travel={t.sprocket: (t.low, t.high) for t in travels},
+        ride_height={
             name: float(extremes[f"ride_height.{name}"].value)
             for name in blank.ride_of_growth
             if f"ride_height.{name}" in extremes
         },
-        "fails": fails,
-        "close": close,
-        "outcome": BAD if fails else ("close" if close else GOOD),
-        "longer": _length(scenario) * (growth - own),
-    }
-    return WearStep(**values)
+        fails=fails,
+        close=close,
+        outcome=FAILS if fails else (CLOSE if close else HOLDS),
+        stop_reason=str(recording.stop_reason),
+    )
 
 
-def _blank(scenario: Any, growth: float, rule: GrowthRule | None, reason: str) -> WearStep:
-    """What is known of a growth without a run."""
+def _blank(scenario: Any, growth: float, rule: GrowthRule | None) -> WearStep:
+    """What is known of a growth before its run."""
     pitch, own = scenario.chain.pitch, float(scenario.chain.growth)
-    rides = {
-        s.name: cf.ride_height(s.pitch or pitch, s.teeth, growth)
-        for s in scenario.sprocket
-        if s.teeth
-    }
-    turns = rule.turns(growth - own) if rule is not None else None
-    length = _length(scenario)
+    length = build_lift(scenario).n_links * pitch
+    turns = rule.turns(max(growth - own, 0.0)) if rule is not None else None
     hours = turns * length / scenario.drive.chain_speed / 3600.0 if turns is not None else None
     return WearStep(
-        growth, length * (growth - own), {}, {}, {}, rides, (), (), "not completed", reason,
-        turns, hours,
-    )  # fmt: skip
-
-
-def _length(scenario: Any) -> float:
-    """Length of the new chain [m]."""
-    from chainsim.model.lift import build_lift
-
-    return build_lift(scenario).n_links * float(scenario.chain.pitch)
+        growth=growth,
+        longer=length * growth,
+        travel={},
+        travel_used={},
+        ride_height={},
+        ride_of_growth={
+            s.name: cf.ride_height(s.pitch or pitch, s.teeth, growth)
+            for s in scenario.sprocket
+            if s.teeth
+        },
+        fails=(),
+        close=(),
+        outcome=NOT_COMPLETED,
+        stop_reason="",
+        turns=turns,
+        hours=hours,
+    )
 
 
 def _percent(share: float) -> str:

@@ -11,7 +11,7 @@ from typing import NamedTuple
 import numpy as np
 
 from chainsim.kernels.contact import hold, normal_force
-from chainsim.kernels.jit import inlined, kernel
+from chainsim.kernels.jit import inlined, kernel, woven
 from chainsim.kernels.layout import TOUCHES
 
 #: one record per piece of surface
@@ -62,6 +62,7 @@ class Touches(NamedTuple):
 
     what: np.ndarray  # (balls, TOUCHES) code
     state: np.ndarray  # (balls,) EMPTY, WAITING, FREE, SEATED
+    used: np.ndarray  # (1,) slots in use: none beyond it holds a ball
     fx: np.ndarray  # (balls,) force [N]
     fy: np.ndarray
     torque: np.ndarray  # (balls,) [N m]
@@ -92,7 +93,7 @@ def find_touches(features, law, state, frames, reach, n, margin, touches):
         `what` is overwritten.
     """
     what, grip = touches.what, state.grip
-    for b in range(what.shape[0]):
+    for b in range(touches.used[0]):
         old_what = (what[b, 0], what[b, 1], what[b, 2], what[b, 3])
         more_what = (what[b, 4], what[b, 5], what[b, 6], what[b, 7])
         base = b * TOUCHES
@@ -147,7 +148,7 @@ def _near_bodies(law, state, frames, reach, touches, b, margin, what, count):
             what[b, count] = TOUCH_WHEEL + s
             count += 1
     limit = 2.0 * law.radius + margin
-    for other in range(b + 1, touches.state.shape[0]):
+    for other in range(b + 1, touches.used[0]):
         if touches.state[other] < FREE:
             continue
         distance2 = (state.bx[other] - px) ** 2 + (state.by[other] - py) ** 2
@@ -157,7 +158,7 @@ def _near_bodies(law, state, frames, reach, touches, b, margin, what, count):
     return count
 
 
-@inlined
+@kernel
 def feature_ends(feature, state):
     """Return both ends of a surface piece in the frame: ax, ay, bx, by [m].
 
@@ -193,8 +194,8 @@ def closest_on_piece(ax, ay, bx, by, px, py):
     return ax + clamped * ex, ay + clamped * ey, part
 
 
-@kernel
-def press_balls(features, law, state, rate, frames, fx, fy, touches, reach, n, dt):
+@woven
+def press_balls(features, law, state, grip_rate, frames, fx, fy, touches, reach, n, dt):
     """Add what balls and everything they touch do to each other.
 
     Parameters
@@ -203,8 +204,8 @@ def press_balls(features, law, state, rate, frames, fx, fy, touches, reach, n, d
     law : BallLaw
     state : State
         `grip` deflections [m] advance in place where ``dt > 0``.
-    rate : State
-        Derivatives; `grip` is overwritten where ``dt == 0``.
+    grip_rate : ndarray, shape (balls * TOUCHES,)
+        Rates of those deflections [m/s]; overwritten where ``dt == 0``.
     frames : Frames
         Force and torque on the wheels; added to.
     fx, fy : ndarray, shape (n_pins,)
@@ -224,7 +225,7 @@ def press_balls(features, law, state, rate, frames, fx, fy, touches, reach, n, d
         Dissipated [W].
     """
     lost = 0.0
-    count = touches.state.shape[0]
+    count = touches.used[0]
     for b in range(count):
         touches.fx[b] = touches.fy[b] = touches.torque[b] = 0.0
     for b in range(count):
@@ -236,18 +237,18 @@ def press_balls(features, law, state, rate, frames, fx, fy, touches, reach, n, d
                 break
             if code < TOUCH_BALL:
                 lost += _press_feature(
-                    features, code, law, state, rate, fx, fy, touches, b, k, n, dt
+                    features, code, law, state, grip_rate, fx, fy, touches, b, k, n, dt
                 )
             elif code < TOUCH_WHEEL:
-                lost += _press_ball(law, state, rate, touches, b, code - TOUCH_BALL, k, dt)
+                lost += _press_ball(law, state, grip_rate, touches, b, code - TOUCH_BALL, k, dt)
             else:
                 s = code - TOUCH_WHEEL
-                lost += _press_wheel(law, state, rate, frames, reach[s], touches, b, s, k, dt)
+                lost += _press_wheel(law, state, grip_rate, frames, reach[s], touches, b, s, k, dt)
     return lost
 
 
 @kernel
-def _press_feature(features, f, law, state, rate, fx, fy, touches, b, k, n, dt):
+def _press_feature(features, f, law, state, grip_rate, fx, fy, touches, b, k, n, dt):
     """Press ball `b` on surface piece `f`; returns the dissipated power [W]."""
     feature = features[f]
     slot = b * TOUCHES + k
@@ -282,7 +283,7 @@ def _press_feature(features, f, law, state, rate, fx, fy, touches, b, k, n, dt):
         sx = state.vx[i] + c_re * ux - c_im * uy
         sy = state.vy[i] + c_re * uy + c_im * ux
     force_x, force_y, power = _rub_ball(
-        feature, law, state, rate, touches, b, slot, nx, ny, reach - distance, sx, sy, dt
+        feature, law, state, grip_rate, touches, b, slot, nx, ny, reach - distance, sx, sy, dt
     )
     if i >= 0:
         j = i + 1 if i + 1 < n else 0
@@ -297,8 +298,8 @@ def _press_feature(features, f, law, state, rate, fx, fy, touches, b, k, n, dt):
     return power
 
 
-@inlined
-def _rub_ball(law_of, law, state, rate, touches, b, slot, nx, ny, depth, sx, sy, dt):
+@kernel
+def _rub_ball(law_of, law, state, grip_rate, touches, b, slot, nx, ny, depth, sx, sy, dt):
     """Return the force on ball `b` from a surface that moves at (sx, sy), and the lost power."""
     radius = law.radius
     wx = state.bvx[b] + state.bw[b] * radius * ny - sx
@@ -315,7 +316,7 @@ def _rub_ball(law_of, law, state, rate, touches, b, slot, nx, ny, depth, sx, sy,
     if dt > 0.0:
         state.grip[slot] = deflection
     else:
-        rate.grip[slot] = slip
+        grip_rate[slot] = slip
     force_x, force_y = push * nx + rub * ny, push * ny - rub * nx
     touches.fx[b] += force_x
     touches.fy[b] += force_y
@@ -325,7 +326,7 @@ def _rub_ball(law_of, law, state, rate, touches, b, slot, nx, ny, depth, sx, sy,
 
 
 @kernel
-def _press_ball(law, state, rate, touches, b, other, k, dt):
+def _press_ball(law, state, grip_rate, touches, b, other, k, dt):
     """Press two balls on each other; returns the dissipated power [W]."""
     slot = b * TOUCHES + k
     dx, dy = state.bx[b] - state.bx[other], state.by[b] - state.by[other]
@@ -340,7 +341,7 @@ def _press_ball(law, state, rate, touches, b, other, k, dt):
     sx = state.bvx[other] - state.bw[other] * arm * ny
     sy = state.bvy[other] + state.bw[other] * arm * nx
     force_x, force_y, power = _rub_ball(
-        law, law, state, rate, touches, b, slot, nx, ny, depth, sx, sy, dt
+        law, law, state, grip_rate, touches, b, slot, nx, ny, depth, sx, sy, dt
     )
     touches.fx[other] -= force_x
     touches.fy[other] -= force_y
@@ -349,7 +350,7 @@ def _press_ball(law, state, rate, touches, b, other, k, dt):
 
 
 @kernel
-def _press_wheel(law, state, rate, frames, reach, touches, b, s, k, dt):
+def _press_wheel(law, state, grip_rate, frames, reach, touches, b, s, k, dt):
     """Press a ball on the tips of a wheel, taken as a round disk; returns the power [W]."""
     slot = b * TOUCHES + k
     dx, dy = state.bx[b] - frames.cx[s], state.by[b] - frames.cy[s]
@@ -364,7 +365,7 @@ def _press_wheel(law, state, rate, frames, reach, touches, b, s, k, dt):
     sx = frames.vx[s] - frames.rate[s] * arm * ny
     sy = frames.vy[s] + frames.rate[s] * arm * nx
     force_x, force_y, power = _rub_ball(
-        law, law, state, rate, touches, b, slot, nx, ny, depth, sx, sy, dt
+        law, law, state, grip_rate, touches, b, slot, nx, ny, depth, sx, sy, dt
     )
     frames.fx[s] -= force_x
     frames.fy[s] -= force_y
@@ -372,7 +373,7 @@ def _press_wheel(law, state, rate, frames, reach, touches, b, s, k, dt):
     return power
 
 
-@kernel
+@woven
 def accelerate_balls(law, gx, gy, touches, state, rate):
     """Write the accelerations of the balls, and keep the largest raw one of the interval.
 
@@ -387,7 +388,7 @@ def accelerate_balls(law, gx, gy, touches, state, rate):
     rate : State
         `bvx`, `bvy`, `bw` are overwritten.
     """
-    for b in range(touches.state.shape[0]):
+    for b in range(touches.used[0]):
         if touches.state[b] < FREE:
             rate.bvx[b] = rate.bvy[b] = rate.bw[b] = 0.0
             continue

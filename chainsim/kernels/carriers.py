@@ -9,18 +9,19 @@ from typing import NamedTuple
 
 import numpy as np
 
-from chainsim.kernels.jit import kernel
+from chainsim.kernels.jit import woven
 
 
 class Blocks(NamedTuple):
-    """Inverse mass matrices of carriers that share no pin: Hermitian 2 x 2 blocks."""
+    """Inverse mass of every pin, and its coupling to the next pin where a carrier joins the two.
 
-    first: np.ndarray  # (n_blocks,) pin i
-    second: np.ndarray  # (n_blocks,) pin j
-    ii: np.ndarray  # (n_blocks,) entries of the inverse [1/kg]
-    jj: np.ndarray
-    ij_re: np.ndarray
-    ij_im: np.ndarray
+    Carriers that share no pin make Hermitian 2 x 2 blocks; the inverse of each is written along the
+    chain, with zeros between, so that one pass over all pins serves.
+    """
+
+    own: np.ndarray  # (n_pins,) [1/kg]
+    next_re: np.ndarray  # (n_pins,) entry (pin i, pin i + 1) of the inverse [1/kg]
+    next_im: np.ndarray
 
 
 class Bands(NamedTuple):
@@ -35,14 +36,13 @@ class Bands(NamedTuple):
     closing: np.ndarray  # (n_runs, 2) complex: last entry of v, and 1 / (1 + v z)
 
 
-@kernel
-def accelerate_pins(inverse_mass, n, fx, fy, ax, ay):
-    """Write force over mass for all pins; those of carriers are overwritten after.
+@woven
+def accelerate_pins(blocks, n, fx, fy, ax, ay):
+    """Write the acceleration of every pin: inverse mass times force, carriers' couplings included.
 
     Parameters
     ----------
-    inverse_mass : ndarray, shape (n_pins,)
-        [1/kg].
+    blocks : Blocks
     n : int
         Number of pins (dimensionless).
     fx, fy : ndarray, shape (n_pins,)
@@ -50,34 +50,33 @@ def accelerate_pins(inverse_mass, n, fx, fy, ax, ay):
     ax, ay : ndarray, shape (n_pins,)
         Accelerations [m/s2]; overwritten.
     """
-    for i in range(n):
-        ax[i] = fx[i] * inverse_mass[i]
-        ay[i] = fy[i] * inverse_mass[i]
+    own, re, im = blocks.own, blocks.next_re, blocks.next_im
+    for i in range(1, n - 1):
+        ax[i] = (
+            own[i] * fx[i]
+            + (re[i] * fx[i + 1] - im[i] * fy[i + 1])
+            + (re[i - 1] * fx[i - 1] + im[i - 1] * fy[i - 1])
+        )
+        ay[i] = (
+            own[i] * fy[i]
+            + (re[i] * fy[i + 1] + im[i] * fx[i + 1])
+            + (re[i - 1] * fy[i - 1] - im[i - 1] * fx[i - 1])
+        )
+    for i in (0, n - 1):
+        ahead, behind = (i + 1) % n, (i - 1 + n) % n
+        ax[i] = (
+            own[i] * fx[i]
+            + (re[i] * fx[ahead] - im[i] * fy[ahead])
+            + (re[behind] * fx[behind] + im[behind] * fy[behind])
+        )
+        ay[i] = (
+            own[i] * fy[i]
+            + (re[i] * fy[ahead] + im[i] * fx[ahead])
+            + (re[behind] * fy[behind] - im[behind] * fx[behind])
+        )
 
 
-@kernel
-def accelerate_blocks(blocks, fx, fy, ax, ay):
-    """Write the accelerations of the pins of carriers that share no pin.
-
-    Parameters
-    ----------
-    blocks : Blocks
-    fx, fy : ndarray, shape (n_pins,)
-        Force on the pins [N].
-    ax, ay : ndarray, shape (n_pins,)
-        Accelerations [m/s2]; the carriers' entries are overwritten.
-    """
-    for b in range(blocks.first.shape[0]):
-        i, j = blocks.first[b], blocks.second[b]
-        re, im = blocks.ij_re[b], blocks.ij_im[b]
-        fix, fiy, fjx, fjy = fx[i], fy[i], fx[j], fy[j]
-        ax[i] = blocks.ii[b] * fix + re * fjx - im * fjy
-        ay[i] = blocks.ii[b] * fiy + re * fjy + im * fjx
-        ax[j] = blocks.jj[b] * fjx + re * fix + im * fiy
-        ay[j] = blocks.jj[b] * fjy + re * fiy - im * fix
-
-
-@kernel
+@woven
 def accelerate_bands(bands, n, fx, fy, ax, ay):
     """Write the accelerations of runs of neighboring carriers (Thomas, Sherman-Morrison).
 

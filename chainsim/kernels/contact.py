@@ -1,6 +1,6 @@
 """One contact law and one friction law, used by every contact and every friction element."""
 
-from chainsim.kernels.jit import inlined
+from chainsim.kernels.jit import inlined, kernel
 
 #: how fast a deflection beyond its slip limit returns to it when a general method integrates [1/s]
 RELAXATION = 5.0e3
@@ -50,7 +50,7 @@ def normal_force(depth, closing, stiffness, dissipation, yielding):
     return force, force - elastic
 
 
-@inlined
+@kernel
 def hold(deflection, slip_rate, low, high, stiffness, damping, dt):
     """Return what a friction element does: a stiff spring that slips at its limits.
 
@@ -106,7 +106,7 @@ def hold(deflection, slip_rate, low, high, stiffness, damping, dt):
     return force, deflection, rate, force * slip_rate - elastic * rate
 
 
-@inlined
+@kernel
 def one_sided_stop(travel, rate, low, high, stiffness, damping):
     """Return the force of the end stops on a coordinate, and what their damper dissipates.
 

@@ -3,7 +3,7 @@
 import numpy as np
 
 from chainsim.kernels.contact import RELAXATION, hold
-from chainsim.kernels.jit import inlined, kernel
+from chainsim.kernels.jit import kernel, woven
 from chainsim.kernels.layout import (
     HOLD_BACKSTOP,
     HOLD_GEAR,
@@ -49,6 +49,10 @@ DRIVE = np.dtype(
         ("table_torque", np.float64, (TABLE_ROWS,)),
         ("backstop", np.int64),
         ("backstop_stiffness", np.float64),  # [N m/rad]
+        ("no_load_current", np.float64),  # [A]
+        ("stall_current", np.float64),
+        ("set_speed", np.float64),  # chain speed that a fed motor is meant to reach [m/s]
+        ("speed_per_rate", np.float64),  # mean chain speed over sprocket rate [m]
         ("forward", np.float64),  # +1 or -1: the sense in which the sprocket runs forward
     ]
 )
@@ -99,7 +103,7 @@ def motor_torque(drive, rate):
     return sign * (table_torque[row - 1] + slope * (speed - table_rate[row - 1])) * abs(level)
 
 
-@kernel
+@woven
 def drive_wheel(t, drive, frames, q, w, held, held_rate, accel, reaction, dt):
     """Add the torque of shaft and backstop to the driven wheel, and move the rotor.
 
@@ -173,7 +177,7 @@ def drive_wheel(t, drive, frames, q, w, held, held_rate, accel, reaction, dt):
     return torque, power_in, lost
 
 
-@inlined
+@kernel
 def _twist(drive, twist, twist_rate, dt):
     """Return torque, new twist, twist rate and lost power of the shaft with its backlash."""
     half = 0.5 * drive.backlash

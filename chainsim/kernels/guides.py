@@ -6,7 +6,7 @@ from typing import NamedTuple
 import numpy as np
 
 from chainsim.kernels.contact import hold, normal_force
-from chainsim.kernels.jit import kernel
+from chainsim.kernels.jit import kernel, woven
 
 #: one record per guide; a guide is a curve, touched at the distance `touch` from it
 GUIDE = np.dtype(
@@ -93,7 +93,7 @@ def find_near_guides(guides, x, y, n, margin, near):
     near.count[0] = count
 
 
-@kernel
+@woven
 def press_guides(guides, near, state, slip_rate, fx, fy, dt):
     """Add what fixed guides do to the pins; returns the dissipated power [W].
 

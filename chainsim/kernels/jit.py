@@ -9,3 +9,6 @@ OPTIONS = {"cache": True, "nogil": True, "error_model": "numpy", "_nrt": False}
 kernel = njit(**OPTIONS)
 #: for laws of a few lines that are called from inner loops
 inlined = njit(forceinline=True, **OPTIONS)
+#: for effects that have one place in the inner loop: woven into it before types are inferred, so
+#: that they are compiled once and pass no arguments at run time
+woven = njit(inline="always", **OPTIONS)

@@ -10,7 +10,7 @@ from typing import NamedTuple
 import numpy as np
 
 from chainsim.kernels.contact import RELAXATION
-from chainsim.kernels.jit import inlined, kernel
+from chainsim.kernels.jit import kernel, woven
 
 
 class Chain(NamedTuple):
@@ -24,6 +24,12 @@ class Chain(NamedTuple):
     inverse_mass: np.ndarray  # (n,) of pins that carry no carrier [1/kg]
     weight_re: np.ndarray  # (n,) complex mass moment on each pin: gravity force = weight * g [kg]
     weight_im: np.ndarray
+    mass: np.ndarray  # (n,) own entry of the mass matrix [kg]
+    coupling_re: np.ndarray  # (n,) entry (pin i, pin i + 1) of the mass matrix [kg]
+    coupling_im: np.ndarray
+    gx: float  # gravity, for the audit [m/s2]
+    gy: float
+    gravity: float
     joint_moment: float  # constant part of joint friction [N m]
     joint_radius: float  # friction coefficient times pin radius [m]
     joint_stiffness: float  # [N m/rad]; 0 switches joint friction off
@@ -31,6 +37,7 @@ class Chain(NamedTuple):
     back_bend: float  # largest turn the other way [rad]; 0: no limit
     bend_stiffness: float  # of the limits [N m/rad]
     air: float  # damping of sideways motion, per pin [N s/m]
+    open: int  # 1: the last link, from the last pin to pin 0, is not there (a strand on the bench)
 
 
 class ChainWork(NamedTuple):
@@ -55,12 +62,13 @@ class ChainWork(NamedTuple):
     tension_low: np.ndarray  # smallest of the sample interval [N]
 
 
-@kernel
-def pull_links(chain, x, y, vx, vy, work):
-    """Work out every link's direction, tension and pull.
+@woven
+def pull_links(chain, x, y, vx, vy, work, half_dt):
+    """Work out every link's direction, tension and pull; keep its losses and extremes.
 
     A link is a spring and a damper side by side; it pulls when longer than its pitch and pushes
-    when shorter, so a pushed strand buckles at its pins.  Inside the play nothing acts.
+    when shorter, so a pushed strand buckles at its pins.  Inside the play nothing acts.  What the
+    damper took since the step before is its force then times the mean stretch rate.
 
     Parameters
     ----------
@@ -68,7 +76,10 @@ def pull_links(chain, x, y, vx, vy, work):
     x, y, vx, vy : ndarray, shape (n_pins + 1,)
         Positions [m] and velocities [m/s]; the last entry repeats pin 0.
     work : ChainWork
-        Overwritten: tx, ty, inverse_length, tension, pull_x, pull_y; `damper` and `rate` too.
+        Overwritten: tx, ty, inverse_length, tension, pull_x, pull_y, damper, rate.
+        Updated: loss, tension_sum, tension_peak, tension_low.
+    half_dt : float
+        Half the inner step [s].
 
     Notes
     -----
@@ -78,67 +89,63 @@ def pull_links(chain, x, y, vx, vy, work):
     k, c = chain.stiffness, chain.damping
     tx, ty, inverse, tension = work.tx, work.ty, work.inverse_length, work.tension
     pull_x, pull_y, pitch = work.pull_x, work.pull_y, chain.pitch
-    damper, rate = work.damper, work.rate
-    for i in range(n):
-        dx = x[i + 1] - x[i]
-        dy = y[i + 1] - y[i]
-        length = math.sqrt(dx * dx + dy * dy)
-        inv = 1.0 / length
-        ux, uy = dx * inv, dy * inv
-        speed = ux * (vx[i + 1] - vx[i]) + uy * (vy[i + 1] - vy[i])
-        drag = c * speed
-        pull = k * (length - pitch[i]) + drag
-        tx[i] = ux
-        ty[i] = uy
-        inverse[i] = inv
-        tension[i] = pull
-        pull_x[i + 1] = pull * ux
-        pull_y[i + 1] = pull * uy
-        damper[i] = drag
-        rate[i] = speed
-    if chain.play > 0.0:
-        _open_play(chain, work)
+    damper, rate, loss = work.damper, work.rate, work.loss
+    total, peak, low = work.tension_sum, work.tension_peak, work.tension_low
+    if chain.play > 0.0 or chain.open == 1:
+        _pull_loose(chain, x, y, vx, vy, work, half_dt)
+    else:
+        for i in range(n):
+            dx = x[i + 1] - x[i]
+            dy = y[i + 1] - y[i]
+            length = math.sqrt(dx * dx + dy * dy)
+            inv = 1.0 / length
+            ux, uy = dx * inv, dy * inv
+            speed = ux * (vx[i + 1] - vx[i]) + uy * (vy[i + 1] - vy[i])
+            drag = c * speed
+            pull = k * (length - pitch[i]) + drag
+            loss[i] += half_dt * damper[i] * (rate[i] + speed)
+            damper[i] = drag
+            rate[i] = speed
+            tx[i] = ux
+            ty[i] = uy
+            inverse[i] = inv
+            tension[i] = pull
+            pull_x[i + 1] = pull * ux
+            pull_y[i + 1] = pull * uy
+            total[i] += pull
+            peak[i] = max(peak[i], pull)
+            low[i] = min(low[i], pull)
     pull_x[0] = pull_x[n]
     pull_y[0] = pull_y[n]
 
 
 @kernel
-def _open_play(chain, work):
-    """Take the force out of links that float inside their play (writes tension, pull, damper)."""
+def _pull_loose(chain, x, y, vx, vy, work, half_dt):
+    """Do the same for a chain whose links float inside their play, or that is an open strand."""
+    n = chain.n
     half = 0.5 * chain.play
-    for i in range(chain.n):
-        stretch = 1.0 / work.inverse_length[i] - chain.pitch[i]
+    for i in range(n):
+        dx, dy = x[i + 1] - x[i], y[i + 1] - y[i]
+        length = math.sqrt(dx * dx + dy * dy)
+        ux, uy = dx / length, dy / length
+        speed = ux * (vx[i + 1] - vx[i]) + uy * (vy[i + 1] - vy[i])
+        stretch = length - chain.pitch[i]
         beyond = max(stretch - half, 0.0) + min(stretch + half, 0.0)
-        drag = work.damper[i] if beyond != 0.0 else 0.0
+        drag = chain.damping * speed if beyond != 0.0 else 0.0
         pull = chain.stiffness * beyond + drag
-        work.damper[i] = drag
+        if chain.open == 1 and i == n - 1:
+            speed = drag = pull = 0.0
+        work.loss[i] += half_dt * work.damper[i] * (work.rate[i] + speed)
+        work.damper[i], work.rate[i] = drag, speed
+        work.tx[i], work.ty[i], work.inverse_length[i] = ux, uy, 1.0 / length
         work.tension[i] = pull
-        work.pull_x[i + 1] = pull * work.tx[i]
-        work.pull_y[i + 1] = pull * work.ty[i]
+        work.pull_x[i + 1], work.pull_y[i + 1] = pull * ux, pull * uy
+        work.tension_sum[i] += pull
+        work.tension_peak[i] = max(work.tension_peak[i], pull)
+        work.tension_low[i] = min(work.tension_low[i], pull)
 
 
-@kernel
-def book_link_losses(chain, last_damper, last_rate, half_dt, work):
-    """Add what the dampers took since the last step: damper force times mean stretch rate.
-
-    Parameters
-    ----------
-    chain : Chain
-    last_damper, last_rate : ndarray, shape (n_links,)
-        Damper force [N] and stretch rate [m/s] of the step before.  Overwritten with the new ones.
-    half_dt : float
-        Half the inner step [s].
-    work : ChainWork
-        `loss` [J] is added to.
-    """
-    damper, rate, loss = work.damper, work.rate, work.loss
-    for i in range(chain.n):
-        loss[i] += half_dt * last_damper[i] * (last_rate[i] + rate[i])
-        last_damper[i] = damper[i]
-        last_rate[i] = rate[i]
-
-
-@kernel
+@woven
 def sum_pin_forces(chain, gx, gy, work):
     """Write the force on every pin: pulls of its two links and the weight hung on it.
 
@@ -157,23 +164,7 @@ def sum_pin_forces(chain, gx, gy, work):
         fy[i] = pull_y[i + 1] - pull_y[i] + (re[i] * gy + im[i] * gx)
 
 
-@kernel
-def track_tension(chain, work):
-    """Add tensions to their running sums and extremes [N] (writes tension_sum, _peak, _low)."""
-    total, peak, low, tension = (
-        work.tension_sum,
-        work.tension_peak,
-        work.tension_low,
-        work.tension,
-    )
-    for i in range(chain.n):
-        pull = tension[i]
-        total[i] += pull
-        peak[i] = max(peak[i], pull)
-        low[i] = min(low[i], pull)
-
-
-@kernel
+@woven
 def turn_links(chain, vx, vy, work):
     """Write every link's rotation rate [rad/s] to ``work.turn``; entry n repeats link 0.
 
@@ -190,26 +181,7 @@ def turn_links(chain, vx, vy, work):
     turn[chain.n] = turn[0]
 
 
-@inlined
-def _rub_joint(chain, i, before, deflection, rate, work, dt):
-    """Work out the friction of joint i between link `before` and link i; returns its power [W]."""
-    k = chain.joint_stiffness
-    slip = work.turn[i] - work.turn[before]
-    pull = 0.5 * abs(work.tension[i] + work.tension[before])
-    limit = chain.joint_moment + chain.joint_radius * pull
-    old = deflection[i]
-    elastic = min(max(k * (old + slip * dt), -limit), limit)
-    new = elastic / k
-    work.couple[i] = -elastic
-    if dt > 0.0:
-        deflection[i] = new
-        work.loss_joint[i] += elastic * slip * dt - 0.5 * k * (new * new - old * old)
-        return 0.0
-    rate[i] = slip - RELAXATION * (old - new)
-    return elastic * (slip - rate[i])
-
-
-@kernel
+@woven
 def rub_joints(chain, deflection, rate, work, dt):
     """Work out the friction couple at every joint; it holds below its limit.
 
@@ -234,14 +206,53 @@ def rub_joints(chain, deflection, rate, work, dt):
         Dissipated power where ``dt == 0`` [W].
     """
     n = chain.n
-    power = _rub_joint(chain, 0, n - 1, deflection, rate, work, dt)
-    for i in range(1, n):
-        power += _rub_joint(chain, i, i - 1, deflection, rate, work, dt)
-    work.couple[n] = work.couple[0]
+    k, m0, radius = chain.joint_stiffness, chain.joint_moment, 0.5 * chain.joint_radius
+    compliance = 1.0 / k
+    turn, tension, couple, loss = work.turn, work.tension, work.couple, work.loss_joint
+    # joint 0 lies between the last link and the first: it is done apart, after the straight loop
+    power = 0.0
+    if dt > 0.0:
+        for i in range(1, n):
+            slip = turn[i] - turn[i - 1]
+            limit = m0 + radius * abs(tension[i] + tension[i - 1])
+            old = deflection[i]
+            elastic = min(max(k * (old + slip * dt), -limit), limit)
+            new = elastic * compliance
+            couple[i] = -elastic
+            deflection[i] = new
+            loss[i] += elastic * slip * dt - 0.5 * k * (new * new - old * old)
+        elastic, new, lost = _rub_joint(chain, 0, n - 1, deflection[0], work, dt)
+        couple[0] = -elastic
+        deflection[0] = new
+        loss[0] += lost
+    else:
+        for i in range(n):
+            before = i - 1 if i > 0 else n - 1
+            elastic, new, _ = _rub_joint(chain, i, before, deflection[i], work, 0.0)
+            couple[i] = -elastic
+            slip = turn[i] - turn[before]
+            rate[i] = slip - RELAXATION * (deflection[i] - new)
+            power += elastic * (slip - rate[i])
+    if chain.open == 1:
+        couple[0] = couple[n - 1] = 0.0
+    couple[n] = couple[0]
     return power
 
 
 @kernel
+def _rub_joint(chain, i, before, old, work, dt):
+    """Return couple [N m], new deflection [rad] and loss [J] of joint i, link `before` to link i."""
+    k = chain.joint_stiffness
+    slip = work.turn[i] - work.turn[before]
+    limit = chain.joint_moment + chain.joint_radius * 0.5 * abs(
+        work.tension[i] + work.tension[before]
+    )
+    elastic = min(max(k * (old + slip * dt), -limit), limit)
+    new = elastic / k
+    return elastic, new, elastic * slip * dt - 0.5 * k * (new * new - old * old)
+
+
+@woven
 def limit_bend(chain, work):
     """Add the couple of the articulation limits at every joint to ``work.couple`` [N m].
 
@@ -267,7 +278,7 @@ def limit_bend(chain, work):
     couple[n] = couple[0]
 
 
-@kernel
+@woven
 def apply_couples(chain, work):
     """Turn the couples at the joints into force pairs, added to every link's pull.
 
@@ -291,7 +302,7 @@ def apply_couples(chain, work):
     pull_y[0] = pull_y[n]
 
 
-@kernel
+@woven
 def drag_sideways(chain, vx, vy, work):
     """Slow the sideways motion of every pin by the air; returns the dissipated power [W].
 

@@ -16,13 +16,12 @@ from chainsim.kernels.carriers import (
     Bands,
     Blocks,
     accelerate_bands,
-    accelerate_blocks,
     accelerate_pins,
 )
 from chainsim.kernels.contact import RELAXATION
 from chainsim.kernels.drive import drive_wheel
 from chainsim.kernels.guides import NearGuides, find_near_guides, press_guides
-from chainsim.kernels.jit import kernel
+from chainsim.kernels.jit import kernel, woven
 from chainsim.kernels.layout import (
     LOSS_AIR,
     LOSS_BALL,
@@ -30,7 +29,6 @@ from chainsim.kernels.layout import (
     LOSS_CONTACT,
     LOSS_DRIVE,
     LOSS_GUIDE,
-    LOSS_JAM,
     LOSS_JOINT,
     LOSS_LINK,
     LOSS_MOUNT,
@@ -43,17 +41,15 @@ from chainsim.kernels.links import (
     Chain,
     ChainWork,
     apply_couples,
-    book_link_losses,
     drag_sideways,
     limit_bend,
     pull_links,
     rub_joints,
     sum_pin_forces,
-    track_tension,
     turn_links,
 )
 from chainsim.kernels.mounts import move_mounts, place_wheels
-from chainsim.kernels.seats import Seats, watch_seats
+from chainsim.kernels.seats import Seats
 from chainsim.kernels.wheels import Frames, Near, Watch, find_near, press_wheels
 
 #: the one record of the surroundings
@@ -102,6 +98,7 @@ class Parts(NamedTuple):
     law: BallLaw
     pockets: np.ndarray
     reach: np.ndarray  # (wheels,) outermost radius, for balls [m]
+    carrier_links: np.ndarray  # (carriers,) link of each carrier
 
 
 class Work(NamedTuple):
@@ -117,12 +114,11 @@ class Work(NamedTuple):
     reaction: np.ndarray  # (wheels,) torque of the drive on the mounts [N m]
     stop_force: np.ndarray  # (wheels,) [N]
     chain_torque: np.ndarray  # (wheels,) of chain and balls on each wheel [N m]
-    last_damper: np.ndarray  # (links,)
-    last_rate: np.ndarray  # (links,)
     power: np.ndarray  # (16,) rates of the ledger [W]
     wheel_sums: np.ndarray  # (wheels, 4) sums of force x, y, torque; largest stop force
     drive_sums: np.ndarray  # (4,) sums of torque and power on the sprocket, last torque, largest
     search_in: np.ndarray  # (1,) inner steps until the next contact search
+    step: np.ndarray  # (1,) inner step [s]
 
 
 @kernel
@@ -143,7 +139,7 @@ def frame_gravity(world, t):
     return world.gx - ax, world.gy - ay, ax, ay
 
 
-@kernel
+@woven
 def close_loop(state, n):
     """Copy pin 0 to the ghost behind the last pin (writes `state`).
 
@@ -157,7 +153,7 @@ def close_loop(state, n):
     state.vx[n], state.vy[n] = state.vx[0], state.vy[0]
 
 
-@kernel
+@woven
 def search(parts, state, work, dt):
     """List what may touch what, and say for how many inner steps the lists hold.
 
@@ -166,7 +162,7 @@ def search(parts, state, work, dt):
     parts : Parts
     state : State
     work : Work
-        Its lists are overwritten.
+        Its lists, and the steps until the next search, are overwritten.
     dt : float
         Inner step [s].
     """
@@ -183,13 +179,13 @@ def search(parts, state, work, dt):
     fastest = 0.0
     for i in range(n):
         fastest = max(fastest, state.vx[i] * state.vx[i] + state.vy[i] * state.vy[i])
-    for b in range(work.touches.state.shape[0]):
+    for b in range(work.touches.used[0]):
         fastest = max(fastest, state.bvx[b] * state.bvx[b] + state.bvy[b] * state.bvy[b])
     reach_time = margin / (2.0 * math.sqrt(fastest) + SEARCH_SPEED)
-    return max(1, min(SEARCH_STEPS, int(reach_time / dt)))
+    work.search_in[0] = max(1, min(SEARCH_STEPS, int(reach_time / dt)))
 
 
-@kernel
+@woven
 def evaluate(t, parts, state, rate, work, dt):
     """Write all accelerations and loss rates at time `t`.
 
@@ -211,7 +207,7 @@ def evaluate(t, parts, state, rate, work, dt):
     chain, links, power = parts.chain, work.links, work.power
     n = chain.n
     gx, gy, ax, ay = frame_gravity(parts.world[0], t)
-    pull_links(chain, state.x, state.y, state.vx, state.vy, links)
+    pull_links(chain, state.x, state.y, state.vx, state.vy, links, 0.5 * dt)
     power[LOSS_JOINT] = 0.0
     bends = chain.front_bend > 0.0 or chain.back_bend > 0.0
     if chain.joint_stiffness > 0.0:
@@ -248,7 +244,7 @@ def evaluate(t, parts, state, rate, work, dt):
             parts.features,
             parts.law,
             state,
-            rate,
+            rate.grip,
             work.frames,
             links.fx,
             links.fy,
@@ -289,8 +285,7 @@ def evaluate(t, parts, state, rate, work, dt):
         work.stop_force,
         dt,
     )
-    accelerate_pins(chain.inverse_mass, n, links.fx, links.fy, rate.vx, rate.vy)
-    accelerate_blocks(parts.blocks, links.fx, links.fy, rate.vx, rate.vy)
+    accelerate_pins(parts.blocks, n, links.fx, links.fy, rate.vx, rate.vy)
     if parts.bands.start.shape[0] > 0:
         accelerate_bands(parts.bands, n, links.fx, links.fy, rate.vx, rate.vy)
     power[WORK_KNOCK] = 0.0
@@ -298,7 +293,7 @@ def evaluate(t, parts, state, rate, work, dt):
         power[WORK_KNOCK] = _knock_power(parts, state, work, ax, ay)
 
 
-@kernel
+@woven
 def _knock_power(parts, state, work, ax, ay):
     """Return the work rate of the inertia forces of a knocked frame [W]."""
     chain = parts.chain
@@ -319,13 +314,13 @@ def _knock_power(parts, state, work, ax, ay):
         vx -= state.w[base + 2] * my
         vy += state.w[base + 2] * mx
         total -= mount.mass * (ax * vx + ay * vy)
-    for b in range(work.touches.state.shape[0]):
+    for b in range(work.touches.used[0]):
         if work.touches.state[b] >= 2:
             total -= parts.law.mass * (ax * state.bvx[b] + ay * state.bvy[b])
     return total
 
 
-@kernel
+@woven
 def hold_jam(world, state, n, fx, fy):
     """Add the pull of a jam on the two pins of the caught link, and return its size [N].
 
@@ -354,8 +349,8 @@ def hold_jam(world, state, n, fx, fy):
     return math.sqrt(pull_x * pull_x + pull_y * pull_y)
 
 
-@kernel
-def kick_and_drift(state, rate, n, dt):
+@woven
+def kick_and_drift(state, rate, n, balls, dt):
     """Advance velocities by the accelerations, then positions by the new velocities.
 
     Parameters
@@ -364,8 +359,8 @@ def kick_and_drift(state, rate, n, dt):
         Overwritten.
     rate : State
         Accelerations.
-    n : int
-        Number of pins (dimensionless).
+    n, balls : int
+        Number of pins, and of ball slots in use (dimensionless).
     dt : float
         Inner step [s].
     """
@@ -382,97 +377,13 @@ def kick_and_drift(state, rate, n, dt):
     for k in range(state.w.shape[0]):
         state.w[k] += dt * rate.w[k]
         state.q[k] += dt * state.w[k]
-    for b in range(state.bx.shape[0]):
+    for b in range(balls):
         state.bvx[b] += dt * rate.bvx[b]
         state.bvy[b] += dt * rate.bvy[b]
         state.bw[b] += dt * rate.bw[b]
         state.bx[b] += dt * state.bvx[b]
         state.by[b] += dt * state.bvy[b]
         state.spin[b] += dt * state.bw[b]
-
-
-@kernel
-def advance(t, dt, steps, parts, state, rate, work):
-    """Take inner steps, keeping sums and extremes of the interval.
-
-    Parameters
-    ----------
-    t : float
-        Time at the start [s].
-    dt : float
-        Inner step [s].
-    steps : int
-        How many (dimensionless).
-    parts : Parts
-    state, rate : State
-        Overwritten.
-    work : Work
-        Overwritten.
-    """
-    n = parts.chain.n
-    half = 0.5 * dt
-    links, frames = work.links, work.frames
-    seated = parts.pockets.shape[0] > 0 and parts.law.mass > 0.0
-    for step in range(steps):
-        if work.search_in[0] <= 0:
-            work.search_in[0] = search(parts, state, work, dt)
-        work.search_in[0] -= 1
-        now = t + step * dt
-        evaluate(now, parts, state, rate, work, dt)
-        book_link_losses(parts.chain, work.last_damper, work.last_rate, half, links)
-        track_tension(parts.chain, links)
-        kick_and_drift(state, rate, n, dt)
-        for k in range(len(work.power)):
-            state.ledger[k] += dt * work.power[k]
-        for s in range(work.reaction.shape[0]):
-            fx, fy = frames.fx[s], frames.fy[s]
-            work.wheel_sums[s, 0] += fx
-            work.wheel_sums[s, 1] += fy
-            work.wheel_sums[s, 2] += work.chain_torque[s]
-            work.wheel_sums[s, 3] = max(work.wheel_sums[s, 3], abs(work.stop_force[s]))
-            work.watch.load[s] = max(work.watch.load[s], fx * fx + fy * fy)
-        torque = work.drive_sums[2]
-        work.drive_sums[0] += torque
-        work.drive_sums[1] += torque * frames.rate[parts.drive[0].wheel]
-        work.drive_sums[3] = max(work.drive_sums[3], abs(torque))
-        if seated:
-            world = parts.world[0]
-            gx, gy, _, _ = frame_gravity(world, now)
-            watch_seats(
-                parts.pockets,
-                work.seats,
-                work.touches.state,
-                state,
-                gx,
-                gy,
-                world.per_window,
-                world.zone_x,
-                world.zone_y,
-                world.zone,
-            )
-        if parts.world[0].jam_on == 1:
-            release_jam(parts.world, state, n, work)
-
-
-@kernel
-def release_jam(world, state, n, work):
-    """Let a jam go when its pull passes its release force; what it had stored is lost.
-
-    Parameters
-    ----------
-    world : ndarray of WORLD, shape (1,)
-        `jam_on` is cleared.
-    state : State
-        The ledger is added to.
-    n : int
-        Number of pins (dimensionless).
-    work : Work
-    """
-    links = work.links
-    pull = hold_jam(world[0], state, n, links.fx, links.fy)
-    if pull > world[0].jam_release:
-        world[0].jam_on = 0
-        state.ledger[LOSS_JAM] += 0.5 * pull * pull / world[0].jam_stiffness
 
 
 @kernel
@@ -502,7 +413,7 @@ def derivative(t, parts, state, rate, work):
         rate.x[i], rate.y[i] = state.vx[i], state.vy[i]
     for k in range(state.w.shape[0]):
         rate.q[k] = state.w[k]
-    for b in range(state.bx.shape[0]):
+    for b in range(work.touches.used[0]):
         rate.bx[b], rate.by[b], rate.spin[b] = state.bvx[b], state.bvy[b], state.bw[b]
     for k in range(work.power.shape[0]):
         rate.ledger[k] = work.power[k]

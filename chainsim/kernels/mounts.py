@@ -9,7 +9,7 @@ import math
 import numpy as np
 
 from chainsim.kernels.contact import hold, one_sided_stop
-from chainsim.kernels.jit import inlined, kernel
+from chainsim.kernels.jit import kernel, woven
 from chainsim.kernels.layout import (
     DROP,
     HOLD_BEARING,
@@ -69,7 +69,7 @@ MOUNT = np.dtype(
 )
 
 
-@kernel
+@woven
 def place_wheels(mounts, q, w, frames):
     """Write where every axle stands and how it moves, and clear the forces on the wheels.
 
@@ -103,7 +103,7 @@ def place_wheels(mounts, q, w, frames):
         frames.fx[s], frames.fy[s], frames.torque[s] = 0.0, 0.0, 0.0
 
 
-@kernel
+@woven
 def move_mounts(mounts, frames, q, w, held, held_rate, gx, gy, reaction, accel, stop_force, dt):
     """Work out the acceleration of every mount, wheel and counterweight.
 
@@ -168,7 +168,7 @@ def move_mounts(mounts, frames, q, w, held, held_rate, gx, gy, reaction, accel, 
     return lost_bearing, lost_mount
 
 
-@inlined
+@kernel
 def _along(mount, travel, speed, index, held, held_rate, stop_force, s, dt):
     """Return the force along a guided coordinate of slide, spring and stops, and the power [W]."""
     force = mount.set_force - mount.spring_rate * travel - mount.damping * speed

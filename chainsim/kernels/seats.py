@@ -5,7 +5,7 @@ from typing import NamedTuple
 import numpy as np
 
 from chainsim.kernels.balls import FREE, SEATED
-from chainsim.kernels.jit import inlined, kernel
+from chainsim.kernels.jit import inlined, kernel, woven
 
 #: one record per carrier; directions in the link's frame (along t, along n)
 POCKET = np.dtype(
@@ -100,8 +100,8 @@ def reserve_of(pocket, along, across):
     return min(reserve, cap)
 
 
-@kernel
-def watch_seats(pockets, seats, states, state, gx, gy, per_window, zone_x, zone_y, zone):
+@woven
+def watch_seats(pockets, seats, touches, state, gx, gy, per_window, zone_x, zone_y, zone):
     """Keep the smallest seat reserve of every seated ball, on the pocket's mean acceleration.
 
     The mean over the window that ends now is the change of the pocket's velocity over it.
@@ -111,8 +111,8 @@ def watch_seats(pockets, seats, states, state, gx, gy, per_window, zone_x, zone_
     pockets : ndarray of POCKET, shape (n_carriers,)
     seats : Seats
         Overwritten.
-    states : ndarray, shape (balls,)
-        Ball states (dimensionless).
+    touches : Touches
+        Ball states.
     state : State
     gx, gy : float
         Gravity, less the frame's acceleration [m/s2].
@@ -123,7 +123,8 @@ def watch_seats(pockets, seats, states, state, gx, gy, per_window, zone_x, zone_
     """
     at = seats.at[0]
     window = seats.ring_x.shape[0]
-    for b in range(states.shape[0]):
+    states = touches.state
+    for b in range(touches.used[0]):
         if states[b] < FREE or seats.pocket[b] < 0:
             continue
         pocket = pockets[seats.pocket[b]]

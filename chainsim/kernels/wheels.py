@@ -11,7 +11,7 @@ from typing import NamedTuple
 import numpy as np
 
 from chainsim.kernels.contact import hold, normal_force
-from chainsim.kernels.jit import inlined, kernel
+from chainsim.kernels.jit import inlined, kernel, woven
 
 #: one record per wheel; lengths [m], stiffness [N/m]
 WHEEL = np.dtype(
@@ -110,9 +110,11 @@ def find_near(wheels, frames, x, y, n, margin, near):
             if dx * dx + dy * dy < limit and count < near.pin.shape[0]:
                 near.pin[count] = i
                 near.wheel[count] = s
-                _first_seat(wheels[s], frames, s, dx, dy, near, count)
                 count += 1
     near.count[0] = count
+    for entry in range(count):
+        i, s = near.pin[entry], near.wheel[entry]
+        _first_seat(wheels[s], frames, s, x[i] - frames.cx[s], y[i] - frames.cy[s], near, entry)
 
 
 @kernel
@@ -163,7 +165,7 @@ def tooth_gap(wheel, u, w):
     return distance - wheel.corner_reach, du / distance, dw / distance
 
 
-@kernel
+@woven
 def press_wheels(wheels, frames, near, state, slip_rate, fx, fy, watch, dt):
     """Add what pins and wheels do to each other.
 
@@ -201,6 +203,10 @@ def press_wheels(wheels, frames, near, state, slip_rate, fx, fy, watch, dt):
         wheel = wheels[s]
         c, sn = frames.cos[s], frames.sin[s]
         rx, ry = state.x[i] - frames.cx[s], state.y[i] - frames.cy[s]
+        if rx * rx + ry * ry > wheel.reach * wheel.reach:
+            if dt > 0.0:
+                state.tooth[i] = 0.0
+            continue
         ox = rx - (c * wheel.offset_x - sn * wheel.offset_y)
         oy = ry - (sn * wheel.offset_x + c * wheel.offset_y)
         if wheel.teeth == 0:

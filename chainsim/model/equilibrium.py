@@ -7,7 +7,8 @@ from typing import NamedTuple
 import numpy as np
 
 from chainsim.errors import RunError
-from chainsim.kernels.relax import relax, stop
+from chainsim.kernels.march import march
+from chainsim.kernels.relax import stop
 from chainsim.model.lift import Lift
 from chainsim.model.packing import Packed
 
@@ -73,7 +74,7 @@ def settle(
     packed.state.x[n], packed.state.y[n] = packed.state.x[0], packed.state.y[0]
     free = frictionless(packed)
     packed.work.search_in[0] = 0
-    left = relax(free, packed.state, packed.rate, packed.work, dt, target, most)
+    left = march(0.0, dt, most, free, packed.state, packed.rate, packed.work, target)
     if not left < target:
         raise RunError(
             f"the lift does not come to rest before the first step: {left:.3g} N stay unbalanced, "
@@ -129,8 +130,6 @@ def clear(packed: Packed) -> None:
     work.links.tension_low[:] = np.inf
     work.links.damper[:] = 0.0
     work.links.rate[:] = 0.0
-    work.last_damper[:] = 0.0
-    work.last_rate[:] = 0.0
     work.wheel_sums[:] = 0.0
     work.drive_sums[:] = 0.0
     for array in work.watch:

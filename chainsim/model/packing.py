@@ -25,7 +25,7 @@ from chainsim.kernels.wheels import Frames, Near, Watch
 from chainsim.model import constants
 from chainsim.model.lift import Lift
 from chainsim.model.packing_balls import pack_features, pack_law, pack_pockets, rolls
-from chainsim.model.packing_carriers import pack_carriers
+from chainsim.model.packing_carriers import PinMasses, pack_carriers
 from chainsim.model.packing_wheels import (
     pack_drive,
     pack_guides,
@@ -79,9 +79,11 @@ def seat_window(lift: Lift) -> float:
 
 def ball_slots(lift: Lift) -> int:
     """Return how many balls the lift can have in play at one time (dimensionless)."""
-    if not rolls(lift):
-        return 0
     balls = lift.scenario.balls
+    if balls is None or lift.pocket is None:
+        return 0
+    if not rolls(lift):
+        return len(lift.carrier_links)
     queue = balls.feed.queue if balls.feed.kind == "trough" else 0
     return len(lift.carrier_links) + int(queue) + 6
 
@@ -113,25 +115,26 @@ def pack(lift: Lift, loaded: np.ndarray | None = None) -> Packed:
 
 def _parts(lift: Lift, loaded: np.ndarray) -> Parts:
     """Pack what the lift is made of."""
-    blocks, bands, moment = pack_carriers(lift, loaded)
+    masses = pack_carriers(lift, loaded)
     wheels = pack_wheels(lift)
     return Parts(
-        chain=_chain(lift, moment),
+        chain=_chain(lift, masses),
         wheels=wheels,
         mounts=pack_mounts(lift),
         drive=pack_drive(lift),
         world=_world(lift),
-        blocks=blocks,
-        bands=bands,
+        blocks=masses.blocks,
+        bands=masses.bands,
         guides=pack_guides(lift),
         features=pack_features(lift),
         law=pack_law(lift),
         pockets=pack_pockets(lift),
         reach=np.ascontiguousarray(wheels["tip_radius"]),
+        carrier_links=np.ascontiguousarray(lift.carrier_links),
     )
 
 
-def _chain(lift: Lift, moment: np.ndarray) -> Chain:
+def _chain(lift: Lift, masses: PinMasses) -> Chain:
     """Pack the chain."""
     chain = lift.scenario.chain
     size = padded(lift.n_links + 1)
@@ -141,7 +144,8 @@ def _chain(lift: Lift, moment: np.ndarray) -> Chain:
     has_joint = chain.joint.moment > 0.0 or radius > 0.0
     inverse_mass, re, im = aligned(size), aligned(size), aligned(size)
     inverse_mass[: lift.n_links] = 1.0 / mass
-    re[: lift.n_links], im[: lift.n_links] = moment.real, moment.imag
+    re[: lift.n_links], im[: lift.n_links] = masses.moment.real, masses.moment.imag
+    gravity = scenario_gravity(lift)
     pitch = aligned(size)
     pitch[: lift.n_links] = lift.pitch
     bends = chain.front_bend or chain.back_bend
@@ -154,6 +158,12 @@ def _chain(lift: Lift, moment: np.ndarray) -> Chain:
         inverse_mass=inverse_mass,
         weight_re=re,
         weight_im=im,
+        mass=np.ascontiguousarray(masses.diagonal),
+        coupling_re=np.ascontiguousarray(masses.coupling.real),
+        coupling_im=np.ascontiguousarray(masses.coupling.imag),
+        gx=gravity[0],
+        gy=gravity[1],
+        gravity=lift.scenario.frame.gravity,
         joint_moment=chain.joint.moment,
         joint_radius=radius,
         joint_stiffness=usual / constants.SLIP_AT_JOINT if has_joint else 0.0,
@@ -161,14 +171,25 @@ def _chain(lift: Lift, moment: np.ndarray) -> Chain:
         back_bend=chain.back_bend or 0.0,
         bend_stiffness=0.02 * chain.link_stiffness * chain.pitch**2 if bends else 0.0,
         air=chain.air_damping,
+        open=0,
     )
+
+
+def scenario_gravity(lift: Lift) -> tuple[float, float]:
+    """Return gravity in the frame: right, up [m/s2].
+
+    Parameters
+    ----------
+    lift : Lift
+    """
+    gravity = lift.scenario.frame.gravity
+    return -gravity * lift.up[0], -gravity * lift.up[1]
 
 
 def _world(lift: Lift) -> np.ndarray:
     """Pack the surroundings."""
     world = np.zeros(1, WORLD)
-    gravity = lift.scenario.frame.gravity
-    world["gx"], world["gy"] = -gravity * lift.up[0], -gravity * lift.up[1]
+    world["gx"], world["gy"] = scenario_gravity(lift)
     world["zone_x"], world["zone_y"] = lift.up
     world["zone"] = lift.unload_height
     world["per_window"] = 1.0 / seat_window(lift)
@@ -205,6 +226,7 @@ def _work(lift: Lift, slots: int) -> Work:
         touches=Touches(
             np.full((slots_kept, 8), -1, np.int64),
             np.zeros(slots_kept, np.int64),
+            np.zeros(1, np.int64),
             np.zeros(slots_kept),
             np.zeros(slots_kept),
             np.zeros(slots_kept),
@@ -224,12 +246,11 @@ def _work(lift: Lift, slots: int) -> Work:
         reaction=np.zeros(n_wheels),
         stop_force=np.zeros(n_wheels),
         chain_torque=np.zeros(n_wheels),
-        last_damper=aligned(size),
-        last_rate=aligned(size),
         power=np.zeros(16),
         wheel_sums=np.zeros((n_wheels, 4)),
         drive_sums=np.zeros(4),
         search_in=np.zeros(1, np.int64),
+        step=np.zeros(1),
     )
 
 

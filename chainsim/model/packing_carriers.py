@@ -7,6 +7,7 @@ from typing import NamedTuple
 import numpy as np
 
 from chainsim.kernels.carriers import Bands, Blocks
+from chainsim.kernels.layout import aligned, padded
 from chainsim.model.lift import Lift
 
 
@@ -109,7 +110,29 @@ def mass_matrix_terms(lift: Lift, hung: Hung) -> tuple[np.ndarray, np.ndarray, n
     return diagonal, coupling, moment
 
 
-def pack_carriers(lift: Lift, loaded: np.ndarray) -> tuple[Blocks, Bands, np.ndarray]:
+class PinMasses(NamedTuple):
+    """The mass matrix of the pins, factored, and what it is made of.
+
+    Attributes
+    ----------
+    blocks : Blocks
+    bands : Bands
+    diagonal : ndarray, shape (n_pins,)
+        [kg].
+    coupling : ndarray of complex, shape (n_links,)
+        Entry (pin i, pin i + 1) [kg].
+    moment : ndarray of complex, shape (n_pins,)
+        Weight on each pin per unit of complex gravity [kg].
+    """
+
+    blocks: Blocks
+    bands: Bands
+    diagonal: np.ndarray
+    coupling: np.ndarray
+    moment: np.ndarray
+
+
+def pack_carriers(lift: Lift, loaded: np.ndarray) -> PinMasses:
     """Return the factored mass matrices and the mass moments of all pins.
 
     Parameters
@@ -119,17 +142,16 @@ def pack_carriers(lift: Lift, loaded: np.ndarray) -> tuple[Blocks, Bands, np.nda
 
     Returns
     -------
-    blocks : Blocks
-    bands : Bands
-    moment : ndarray of complex, shape (n_pins,)
-        [kg].
+    PinMasses
     """
     hung = hung_masses(lift, loaded)
     diagonal, coupling, moment = mass_matrix_terms(lift, hung)
     runs = runs_of_links(np.unique(hung.link), lift.n_links)
-    return (
+    return PinMasses(
         _blocks([run for run in runs if len(run) == 1], diagonal, coupling, lift.n_links),
         _bands([run for run in runs if len(run) > 1], diagonal, coupling, lift.n_links),
+        diagonal,
+        coupling,
         moment,
     )
 
@@ -164,19 +186,16 @@ def runs_of_links(links: np.ndarray, n: int) -> list[list[int]]:
 
 
 def _blocks(runs, diagonal, coupling, n: int) -> Blocks:
-    """Invert the 2 x 2 Hermitian blocks of single carriers."""
+    """Invert the 2 x 2 Hermitian blocks of single carriers, along the whole chain."""
+    own, re, im = aligned(padded(n + 1)), aligned(padded(n + 1)), aligned(padded(n + 1))
+    own[:n] = 1.0 / diagonal
     first = np.array([run[0] for run in runs], np.int64)
     second = (first + 1) % n
     ii, jj, ij = diagonal[first], diagonal[second], coupling[first]
     determinant = ii * jj - np.abs(ij) ** 2
-    return Blocks(
-        first,
-        second,
-        np.ascontiguousarray(jj / determinant),
-        np.ascontiguousarray(ii / determinant),
-        np.ascontiguousarray((-ij / determinant).real),
-        np.ascontiguousarray((-ij / determinant).imag),
-    )
+    own[first], own[second] = jj / determinant, ii / determinant
+    re[first], im[first] = (-ij / determinant).real, (-ij / determinant).imag
+    return Blocks(own, re, im)
 
 
 def _bands(runs, diagonal, coupling, n: int) -> Bands:

@@ -231,6 +231,11 @@ def pack_drive(lift: Lift) -> np.ndarray:
     if drive.overrunning:
         entry["low"], entry["high"] = (0.0, most) if forward > 0 else (-most, 0.0)
     entry["forward"] = forward
+    sprocket = lift.scenario.sprocket[lift.driven]
+    wheel = lift.wheels[lift.driven]
+    per_turn = wheel.teeth * (sprocket.pitch or lift.scenario.chain.pitch)
+    entry["speed_per_rate"] = per_turn / (2.0 * math.pi) if wheel.teeth else wheel.radius
+    entry["set_speed"] = drive.chain_speed or 0.0
     entry["smooth"] = int(drive.ramp_shape == "smooth")
     entry["level"] = 1.0
     entry["backstop"] = int(drive.backstop)
@@ -248,6 +253,7 @@ def _pack_motor(entry, motor, forward: float) -> None:
     entry["stall_torque"] = motor.stall_torque * ratio
     entry["free_rate"] = motor.no_load_speed / ratio
     entry["drag_torque"] = motor.stall_torque * ratio * motor.no_load_current / motor.stall_current
+    entry["no_load_current"], entry["stall_current"] = motor.no_load_current, motor.stall_current
     entry["drive_loss"] = 1.0 / motor.gear_efficiency - 1.0
     entry["back_loss"] = (1.0 - motor.gear_efficiency) if motor.back_drivable else 1.2
     entry["gear_stiffness"] = entry["stall_torque"] / 0.05

@@ -80,10 +80,10 @@ class RunProgress:
         """Say how much was simulated, and how fast."""
         if self._start is None:
             return
-        simulated, wall = self._last
+        (first, begun), (simulated, wall) = self._start, self._last
         text = f"{self._name}: {simulated:.1f} s simulated in {wall:.1f} s"
-        if wall > 0.0:
-            text += f", {simulated / wall:.3g} simulated s per s"
+        if wall > begun:  # the first call comes when all is compiled
+            text += f", {(simulated - first) / (wall - begun):.3g} simulated s per s"
         self._stream.write(f"{CLEAR if self._is_live else ''}{text}\n")
         self._stream.flush()
 

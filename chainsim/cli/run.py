@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+import time
 from pathlib import Path
 from typing import Any
 
 import click
 
-from chainsim.cli.files import SUFFIX, free_name, stem_of, writable_folder
+from chainsim.cli.files import free_name, stem_of, writable_folder
 from chainsim.cli.findings import run_data, show_verdict, status_of
 from chainsim.cli.frame import (
     HOLDS,
@@ -22,10 +23,13 @@ from chainsim.cli.frame import (
     tell,
 )
 from chainsim.cli.screen import say, show, shown_path, tell_remarks
-from chainsim.errors import STOPPED_BY_USER, Interrupted
+from chainsim.errors import STOPPED_BY_USER, Interrupted, RunError
 
 FOLDER = "out"
 """Where recordings and pages go."""
+
+CLOCK_GRAIN = 2.0
+"""Coarsest time stamp of a file system in use [s]."""
 
 
 @command("run", short_help="Simulate lifts, judge them, record and report.")
@@ -72,28 +76,48 @@ def run(
 
 
 def simulated(scenario: Any, folder: Path, force: bool, quiet: bool) -> Any:
-    """Run a scenario, its progress on standard error, and return the recording."""
+    """Run a scenario, its progress on standard error, and return the recording.
+
+    What a Ctrl-C leaves is opened and returned; it is not complete.
+    """
     from chainsim.cli.progress import RunProgress, will_compile
+    from chainsim.recording import open_recording
+    from chainsim.recording.places import free_path, recording_path
     from chainsim.run import run as simulate
 
-    path = folder / f"{scenario.stem}{SUFFIX}"
-    if quiet:
-        return simulate(scenario, path, force=force)
-    if will_compile():
+    if not quiet and will_compile():
         say("compiling the kernels for this machine: once, about half a minute")
-    progress = RunProgress(scenario.stem)
+    progress = None if quiet else RunProgress(scenario.stem)
+    place = free_path(recording_path(folder, scenario.stem), force)
+    begun = time.time()
     try:
-        return simulate(scenario, path, force=force, progress=progress)
+        return simulate(scenario, folder, force=force, progress=progress)
+    except KeyboardInterrupt:
+        if not _is_new(place, begun):
+            raise Interrupted("interrupted before anything was recorded") from None
+        return open_recording(place)
+    except RunError as error:
+        if _is_new(place, begun):
+            raise RunError(f"{error}; what came before is kept in {shown_path(place)}") from error
+        raise
     finally:
-        progress.end()
+        if progress is not None:
+            progress.end()
+
+
+def _is_new(path: Path, begun: float) -> bool:
+    """Whether a file was written since a moment."""
+    return path.exists() and path.stat().st_mtime >= begun - CLOCK_GRAIN
 
 
 def _judged(
     file: str, scenario: Any, rec: Any, as_json: bool, strict: bool, options: dict[str, Any]
 ) -> tuple[int, dict[str, Any]]:
     """Print a run and write its page; then do the studies that were asked for."""
+    from chainsim.report.text import findings_of
+
     page = None if options["no_report"] else _page(rec, options["force"])
-    status = status_of(rec.findings, scenario.remarks, strict)
+    status = status_of(findings_of(rec), scenario.remarks, strict)
     data = {"file": file, **run_data(rec, scenario.remarks)}
     data["report"] = str(page) if page else None
     if not as_json:

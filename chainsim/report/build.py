@@ -23,7 +23,8 @@ from chainsim.report.build_case import Case, case_of
 from chainsim.report.build_cautions import sheet_cautions
 from chainsim.report.build_chain import carriers_part, chain_part
 from chainsim.report.build_checks import checks_part
-from chainsim.report.build_drive import direction_part, drive_part
+from chainsim.report.build_direction import direction_part
+from chainsim.report.build_drive import drive_part
 from chainsim.report.build_line import Part
 from chainsim.report.build_order import order_part
 from chainsim.report.build_setting import takeup_part

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from chainsim.report.build_case import Case
-from chainsim.report.build_drive import turning
+from chainsim.report.build_direction import turning
 from chainsim.report.build_takeup import movable_axles, travel_of
 from chainsim.report.layout_notes import mount_text
 

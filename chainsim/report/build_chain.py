@@ -166,13 +166,13 @@ def _pocket_lines(case: Case, pocket: Pocket) -> Iterator[Line]:
     yield from _width_lines(case, balls.diameter, pocket.friction)
     for number, (a, b) in enumerate(form.outline, 1):
         yield Line(
-            f"inner corner {number} of the pocket: a, b",
+            f"inner corner {number}, (a, b)",
             place_text(a, b, 2),
             source=DRAWN,
             note="inner surface, on the side of the ball" if number == 1 else "",
         )
     yield Line(
-        "center of a ball at rest: a, b",
+        "center of a ball at rest, (a, b)",
         place_text(*form.seat, 2),
         source=DRAWN,
     )

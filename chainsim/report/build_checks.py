@@ -12,7 +12,8 @@ from chainsim import closed_forms as cf
 from chainsim.analysis.stops import overrun
 from chainsim.analysis.survey import Survey
 from chainsim.report.build_case import Case, steady_mean
-from chainsim.report.build_drive import driven_rate, reckoned_current, run_back_line, running_torque
+from chainsim.report.build_direction import run_back_line
+from chainsim.report.build_drive import driven_rate, reckoned_current, running_torque
 from chainsim.report.build_line import (
     CLOSED,
     DRAWN,

@@ -53,9 +53,9 @@ def takeup_part(case: Case) -> Part:
         "takeup",
         "Take-up: setting and travel",
         "The range to accept is a closed form of steady running: below it a strand may go slack "
-        "(twice the slack mass is asked for; of a spring or counterweight as much more as the balls "
-        "weigh), above it links come near their strength or the take-up bounces with the teeth. "
-        "Only the setting itself was simulated, if at all.",
+        "(twice the slack mass is asked for; of a spring or counterweight as much more as the "
+        "balls weigh), above it links come near their strength or the take-up bounces with the "
+        "teeth. Only the setting itself was simulated, if at all.",
         tuple(lines),
     )
 
@@ -66,8 +66,8 @@ def _setting_lines(case: Case, k: int) -> Iterator[Line]:
     least, most = _slack_and_strong(case, k, value)
     avoid = _masses_to_avoid(case, k) if mount.kind not in ("spring", "counterweight") else None
     low, high = _safe_range(value, _safe_low(case, k, value, least), most, avoid)
-    if avoid is not None and avoid[0] < value < avoid[1]:
-        note = f"IT BOUNCES WITH THE TEETH, see below; {note}"
+    if not low <= value <= high:
+        note = f"OUTSIDE ITS RANGE; {note}" if note else "OUTSIDE ITS RANGE"
     yield Line(f"{name}: {item}", value, unit, STATED, note, low, high)
     words = "steady running" if least else "steady running; the chain's own weight keeps it taut"
     yield Line(f"{name}: a strand goes slack below", least, unit, CLOSED, words)
@@ -91,12 +91,12 @@ def _safe_low(case: Case, k: int, value: float, least: float) -> float:
 def _safe_range(
     value: float, low: float, most: float, avoid: tuple[float, float] | None
 ) -> tuple[float, float]:
-    """Range round a setting that no closed form speaks against, in its unit."""
-    if avoid is not None and value <= avoid[0]:
-        return min(low, value), min(most, avoid[0])
-    if avoid is not None and value >= avoid[1]:
-        return max(low, avoid[1]), most
-    return low, most
+    """Range that no closed form speaks against and that is nearest to a setting, in its unit."""
+    if avoid is None:
+        return low, most
+    below, above = (low, min(most, avoid[0])), (max(low, avoid[1]), most)
+    ranges = [ends for ends in (below, above) if ends[0] < ends[1]]
+    return min(ranges, key=lambda ends: max(ends[0] - value, value - ends[1]), default=(low, most))
 
 
 def _setting_of(mount: Any) -> tuple[float, str, str, str]:

@@ -72,7 +72,7 @@ def _axle_lines(case: Case) -> Iterator[Line]:
     load, source = None, SIMULATED
     loads = case.simulated(axle_loads)
     if loads:
-        load = loads[case.driven].peak
+        load = case.extreme(f"axle_load.{part.name}") or loads[case.driven].peak
     elif case.sized is not None:
         load, source = float(math.hypot(*case.sized.running.hub[case.driven])), CLOSED_ONLY
     yield Line(f"axle of {part.name}", diameter, "m", note="plain round steel taken here")

@@ -142,20 +142,21 @@ def _held(radius: float, lip: float, tilt: float, gravity: float) -> float:
 
 def _room_lines(case: Case) -> Iterator[Line]:
     clearance = case.scenario.limits.clearance
-    for name, free in (("inward", clearance.inward), ("outward", clearance.outward)):
-        used = case.simulated(partial(_most, name=name))
-        if free is None and used is None:
-            continue
-        note = "used by the line of the pins in steady running; carriers and balls come on top"
-        line = Line(f"room beside the strands, {name}", None, "m", "", note)
-        yield ran_or_reckoned(line, used)._replace(high=free)
+    for k, strand in enumerate(case.lift.strands):
+        for side, limit in (("inward", clearance.inward), ("outward", clearance.outward)):
+            free = limit if strand.carrying else None
+            used = case.simulated(partial(_excursion, strand=k, side=side))
+            if free is None and used is None:
+                continue
+            note = "what the line of the pins used; carriers and balls come on top"
+            line = Line(f"room beside strand {strand.name}, {side}", None, "m", "", note)
+            yield ran_or_reckoned(line, used)._replace(high=free)
 
 
-def _most(s: Survey, name: str) -> float | None:
-    """Largest excursion of all strands to one side in steady running [m]."""
-    sides = [getattr(excursion(s, k), name)[s.is_steady] for k in range(len(s.strands))]
-    known = np.concatenate(sides)
-    known = known[np.isfinite(known)]
+def _excursion(s: Survey, strand: int, side: str) -> float | None:
+    """Largest excursion of a strand to one side in steady running [m]."""
+    values = getattr(excursion(s, strand), side)[s.is_steady]
+    known = values[np.isfinite(values)]
     return float(known.max()) if known.size else None
 
 

@@ -110,7 +110,10 @@ def pack(lift: Lift, loaded: np.ndarray | None = None) -> Packed:
     flat, rate_flat = aligned(int(ends[-1])), aligned(int(ends[-1]))
     state, rate = view(flat, ends), view(rate_flat, ends)
     _place(lift, state)
-    return Packed(parts, _work(lift, slots), flat, rate_flat, ends, state, rate)
+    work = new_work(
+        lift.n_links, n_wheels, len(lift.scenario.guide), slots, len(lift.carrier_links)
+    )
+    return Packed(parts, work, flat, rate_flat, ends, state, rate)
 
 
 def _parts(lift: Lift, loaded: np.ndarray) -> Parts:
@@ -197,16 +200,21 @@ def _world(lift: Lift) -> np.ndarray:
     return world
 
 
-def _work(lift: Lift, slots: int) -> Work:
-    """Set up scratch space."""
-    n, n_wheels = lift.n_links, len(lift.wheels)
+def new_work(n: int, n_wheels: int, n_guides: int, slots: int, n_carriers: int) -> Work:
+    """Set up scratch space.
+
+    Parameters
+    ----------
+    n, n_wheels, n_guides, slots, n_carriers : int
+        Pins, wheels, guides, ball slots and carriers (dimensionless).
+    """
     size = padded(n + 2)
     rows = [aligned(size) for _ in ChainWork._fields]
     links = ChainWork(*rows)
     links.tension_low[:] = np.inf
     links.tension_peak[:] = -np.inf
     near = n * max(1, n_wheels)
-    n_guides = max(1, len(lift.scenario.guide))
+    n_guides = max(1, n_guides)
     slots_kept = max(1, slots)
     return Work(
         links=links,
@@ -231,7 +239,7 @@ def _work(lift: Lift, slots: int) -> Work:
             np.zeros(slots_kept),
             np.zeros(slots_kept),
             np.zeros(slots_kept),
-            np.zeros(max(1, len(lift.carrier_links))),
+            np.zeros(max(1, n_carriers)),
         ),
         seats=Seats(
             np.full(slots_kept, -1, np.int64),

@@ -76,12 +76,17 @@ def hung_masses(lift: Lift, loaded: np.ndarray) -> Hung:
     return Hung(np.array(link, np.int64), np.array(c), np.array(mass), np.array(own))
 
 
-def mass_matrix_terms(lift: Lift, hung: Hung) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+def mass_matrix_terms(
+    pin_mass: np.ndarray, pitch: float, hung: Hung
+) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     """Return pin masses, the coupling of each link's pins, and the mass moments for gravity.
 
     Parameters
     ----------
-    lift : Lift
+    pin_mass : ndarray, shape (n_pins,)
+        Mass of the bare chain on each pin [kg].
+    pitch : float
+        [m].
     hung : Hung
 
     Returns
@@ -93,11 +98,9 @@ def mass_matrix_terms(lift: Lift, hung: Hung) -> tuple[np.ndarray, np.ndarray, n
     moment : ndarray of complex, shape (n_pins,)
         Weight on each pin per unit of complex gravity [kg].
     """
-    n = lift.n_links
-    link_mass = lift.scenario.chain.link_mass
-    pitch = lift.scenario.chain.pitch
-    diagonal = np.full(n, link_mass)
-    moment = np.full(n, complex(link_mass))
+    n = len(pin_mass)
+    diagonal = np.array(pin_mass, float)
+    moment = diagonal.astype(complex)
     coupling = np.zeros(n, complex)
     for i, c, mass, inertia in zip(*hung, strict=True):
         j = (i + 1) % n
@@ -145,11 +148,32 @@ def pack_carriers(lift: Lift, loaded: np.ndarray) -> PinMasses:
     PinMasses
     """
     hung = hung_masses(lift, loaded)
-    diagonal, coupling, moment = mass_matrix_terms(lift, hung)
-    runs = runs_of_links(np.unique(hung.link), lift.n_links)
+    chain = lift.scenario.chain
+    terms = mass_matrix_terms(np.full(lift.n_links, chain.link_mass), chain.pitch, hung)
+    return factored(*terms, hung.link)
+
+
+def factored(
+    diagonal: np.ndarray, coupling: np.ndarray, moment: np.ndarray, links: np.ndarray
+) -> PinMasses:
+    """Return the mass matrix of the pins, factored.
+
+    Parameters
+    ----------
+    diagonal : ndarray, shape (n_pins,)
+        [kg].
+    coupling : ndarray of complex, shape (n_links,)
+        Entry (pin i, pin i + 1) [kg].
+    moment : ndarray of complex, shape (n_pins,)
+        Weight on each pin per unit of complex gravity [kg].
+    links : ndarray of int, shape (n_masses,)
+        Links that carry something (dimensionless).
+    """
+    n = len(diagonal)
+    runs = runs_of_links(np.unique(links), n)
     return PinMasses(
-        _blocks([run for run in runs if len(run) == 1], diagonal, coupling, lift.n_links),
-        _bands([run for run in runs if len(run) > 1], diagonal, coupling, lift.n_links),
+        _blocks([run for run in runs if len(run) == 1], diagonal, coupling, n),
+        _bands([run for run in runs if len(run) > 1], diagonal, coupling, n),
         diagonal,
         coupling,
         moment,

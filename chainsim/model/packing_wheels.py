@@ -13,6 +13,7 @@ from chainsim.kernels.mounts import MOUNT
 from chainsim.kernels.wheels import WHEEL
 from chainsim.model import constants
 from chainsim.model.lift import Lift
+from chainsim.model.tooth import ToothForm
 
 FAR = 1.0e9
 """Stands for no limit [N m]."""
@@ -65,24 +66,39 @@ def pack_wheels(lift: Lift) -> np.ndarray:
         roller = 0.5 * chain.roller_diameter
         if form is None:
             record["seat_radius"] = wheel.radius
-            record["reach"] = wheel.radius
+            record["reach"] = wheel.radius + sprocket.eccentricity
             record["tip_radius"] = wheel.radius - roller
             continue
-        step = 2.0 * math.pi / wheel.teeth
-        record["seat_radius"] = form.seat_radius
-        record["tan_half"] = math.tan(0.5 * step)
-        record["cos_step"], record["sin_step"] = math.cos(step), math.sin(step)
-        record["cos_half"], record["sin_half"] = math.cos(0.5 * step), math.sin(0.5 * step)
-        record["cos_flank"], record["sin_flank"] = form.cos_lean, form.sin_lean
-        record["flank_end"] = form.flank_end
-        record["clearance"] = form.seat_clearance
-        record["corner_u"], record["corner_w"] = form.corner_u, form.corner_w
-        record["corner_reach"] = form.corner_radius + roller
-        record["land_height"] = form.outer_radius + roller
-        record["has_land"] = int(form.has_land)
-        record["reach"] = form.outer_radius + roller + sprocket.eccentricity
-        record["tip_radius"] = form.outer_radius
+        write_tooth(record, form, roller)
+        record["reach"] += sprocket.eccentricity
     return wheels
+
+
+def write_tooth(record, form: ToothForm, roller: float) -> None:
+    """Write the outline of a toothed wheel into its record.
+
+    Parameters
+    ----------
+    record : record of WHEEL
+        Its outline is overwritten.
+    form : ToothForm
+    roller : float
+        Radius of the chain's rollers [m].
+    """
+    step = 2.0 * math.pi / form.teeth
+    record["seat_radius"] = form.seat_radius
+    record["tan_half"] = math.tan(0.5 * step)
+    record["cos_step"], record["sin_step"] = math.cos(step), math.sin(step)
+    record["cos_half"], record["sin_half"] = math.cos(0.5 * step), math.sin(0.5 * step)
+    record["cos_flank"], record["sin_flank"] = form.cos_lean, form.sin_lean
+    record["flank_end"] = form.flank_end
+    record["clearance"] = form.seat_clearance
+    record["corner_u"], record["corner_w"] = form.corner_u, form.corner_w
+    record["corner_reach"] = form.corner_radius + roller
+    record["land_height"] = form.outer_radius + roller
+    record["has_land"] = int(form.has_land)
+    record["reach"] = form.outer_radius + roller
+    record["tip_radius"] = form.outer_radius
 
 
 def _mid_wrap(lift: Lift, s: int, middle: float) -> tuple[float, float]:

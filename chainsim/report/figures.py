@@ -82,6 +82,15 @@ def harmonics_figure(rec: Any) -> Figure | None:
     return figure
 
 
+SHOWN_RATES = 2.5
+"""How far the axis of frequencies goes at least [tooth rates]."""
+
+
+def is_judged(kind: str) -> bool:
+    """Tell whether a mode is judged: those of the take-ups, and the first of each strand."""
+    return kind.startswith("take-up") or (kind.startswith("strand") and kind.endswith(" 1"))
+
+
 def resonance_figure(rec: Any) -> Figure | None:
     """Draw natural frequencies over the tooth rate, its half, and their guard bands."""
     modes = rec.modes
@@ -91,8 +100,8 @@ def resonance_figure(rec: Any) -> Figure | None:
     kinds = [mode.kind for mode in modes]
     frequency = np.array([mode.frequency for mode in modes])
     rate = s.tooth_rate
-    named = [k for k in range(len(kinds)) if kinds[k] != "other"]
-    rest = [k for k in range(len(kinds)) if kinds[k] == "other" and frequency[k] < 4.0 * rate]
+    named = [k for k, kind in enumerate(kinds) if is_judged(kind)]
+    rest = [k for k in range(len(kinds)) if k not in named and frequency[k] < SHOWN_RATES * rate]
     figure, (axes,) = new_figure(height=1.3 + 0.27 * (len(named) + 1))
     guard = rec.scenario.limits.guard_band
     for factor, label in ((1.0, "tooth rate"), (0.5, "half of it")):
@@ -109,7 +118,7 @@ def resonance_figure(rec: Any) -> Figure | None:
             fontsize=8,
         )
     order = sorted(named, key=lambda k: -frequency[k])
-    rows = ["rest"] + [kinds[k] for k in order] if rest else [kinds[k] for k in order]
+    rows = ["all others"] + [kinds[k] for k in order] if rest else [kinds[k] for k in order]
     if rest:
         axes.plot(frequency[rest], np.zeros(len(rest)), "|", color=FAINT, markersize=9)
     for row, k in enumerate(order, start=1 if rest else 0):
@@ -126,7 +135,7 @@ def resonance_figure(rec: Any) -> Figure | None:
         )
     axes.set_yticks(range(len(rows)), rows)
     axes.set_ylim(-0.6, len(rows) - 0.4)
-    axes.set_xlim(0.0, max([2.0 * rate, *(1.15 * frequency[named])]))
+    axes.set_xlim(0.0, max([SHOWN_RATES * rate, *(1.15 * frequency[named])]))
     axes.set_xlabel(
         "frequency [Hz]; shaded: guard band around the tooth rate and around half of it"
     )

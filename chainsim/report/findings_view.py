@@ -41,7 +41,7 @@ def finding_view(finding: Any, reserve: float, marks: list[Mark]) -> dict:
         "why": finding.why,
         "gauge": margin_gauge(finding.margin, finding.scale, reserve),
         "margin": f"margin {signed(finding.margin, unit)}" if has_margin else "",
-        "scale": f"scale {quantity(finding.scale, unit)}" if has_margin else "",
+        "scale": f"scale {quantity(finding.scale, unit)}" if finding.scale and has_margin else "",
         "mark": mark,
     }
 

@@ -58,8 +58,10 @@ def margin_gauge(margin: float | None, scale: float | None, reserve: float) -> M
     reserve : float
         Share of the scale below which an outcome is close [dimensionless].
     """
-    if margin is None or not scale or margin != margin:
+    if margin is None or margin != margin:
         return Markup('<span class="none">no margin</span>')
+    if not scale:
+        return Markup("")
     share = margin / scale
     width = round(GAUGE_WIDTH + 12.0)
     zero, edge, at = _gauge_place(0.0), _gauge_place(reserve), _gauge_place(share)

@@ -55,6 +55,11 @@ def is_lost(fate: str) -> bool:
     return fate not in KEPT_FATES
 
 
+def is_notable(event: Any) -> bool:
+    """Tell whether an event is more than what every ball goes through."""
+    return event.kind.replace("_", " ") not in EVERYDAY_EVENTS
+
+
 def place_target(place: str, names: list[str]) -> dict | None:
     """Return what a place in words points at, where the page can ring it.
 
@@ -100,7 +105,7 @@ def marks(rec: Any, findings: list) -> list[Mark]:
             text = f"ball {ball.number} {ball.fate}{cause}"
             target = {"kind": "ball", "index": int(ball.number)}
             found.append(Mark(loss_time(rec, ball), "loss", text, target))
-    shown = [event for event in rec.events if event.kind.replace("_", " ") not in EVERYDAY_EVENTS]
+    shown = [event for event in rec.events if is_notable(event)]
     for event in shown[:MAX_EVENT_MARKS]:
         text = event.text or f"{event.kind} {event.subject}".strip()
         found.append(Mark(event.time, "event", text, place_target(event.subject, names)))

@@ -16,7 +16,7 @@ import numpy as np
 MAX_RATE = 50.0
 """Most recorded moments per second that the page gets [1/s]; screens show hardly more."""
 
-MAX_BASE64 = 1_500_000
+MAX_BASE64 = 1_150_000
 """Most characters that the packed motion may take [dimensionless]; long runs get fewer moments."""
 
 LARGEST = 65535

@@ -161,7 +161,8 @@ PLOTS: tuple[Plot, ...] = (
         "resonance",
         "Natural frequencies and the tooth rate",
         "A frequency inside a shaded band is fed by every passing tooth. "
-        "Diamonds are the take-up bouncing on the chain, which matters most.",
+        "Diamonds are the take-up bouncing on the chain, which matters most; a strand also minds "
+        "half the tooth rate.",
         resonance_figure,
     ),
 )

@@ -32,11 +32,14 @@ UNIT_TEXTS = {
 OTHER_UNITS = {"m": (1e3, "mm"), "rad": (180.0 / math.pi, "°")}
 """Units that read better in another size: factor and text."""
 
+SEATS = "seats"
+"""Unit of the difference between a chain's travel and its sprocket's rotation."""
+
 SHARE = "share"
 """Unit of a dimensionless value that is read in percent."""
 
 DIMENSIONLESS_FINDINGS = {
-    "no_tooth_skipped": "seats",
+    "no_tooth_skipped": SEATS,
     "ride_smooth": SHARE,
     "off_resonance": SHARE,
 }
@@ -74,7 +77,10 @@ def quantity(value: float | None, unit: str, digits: int = 3) -> str:
     if value is None or not is_number(float(value)):
         return "–"
     factor, text = _readable_unit(abs(float(value)), unit)
-    return f"{significant(float(value) * factor, digits)} {text}".strip()
+    number = significant(float(value) * factor, digits)
+    if text == SEATS and number in ("1", "−1"):
+        text = text.removesuffix("s")
+    return f"{number} {text}".strip()
 
 
 def unit_of(name: str, unit: str) -> str:

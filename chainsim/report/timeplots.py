@@ -9,8 +9,15 @@ import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.figure import Figure
 
+from chainsim.report.moments import is_notable
 from chainsim.report.series import DEMANDED, Curve, Panel
 from chainsim.report.style import FAINT, LINE_CYCLE, OUTCOME_COLORS, new_figure
+
+LABEL_ROOM = 0.08
+"""Least distance of two labels, as a share of the axis [dimensionless]."""
+
+MAX_EVENTS = 12
+"""Most events that are drawn over time [dimensionless]."""
 
 MAX_COLUMNS = 360
 """Most pieces of time of one curve [dimensionless]; more samples become bands."""
@@ -70,16 +77,22 @@ def _draw_curve(axes: Axes, time: np.ndarray, curve: Curve, look: dict, label: s
     """Draw a curve with the band between least and largest values behind it."""
     middle, mean, low, high = thinned(time, curve.values)
     if len(middle) < len(time):
-        axes.fill_between(middle, low, high, color=look["color"], alpha=0.22, linewidth=0)
+        axes.fill_between(middle, low, high, color=look["color"], alpha=0.25, linewidth=0.5)
         mean = smoothed(mean)
     axes.plot(middle, mean, label=label, **look)
 
 
 def _draw_limits(axes: Axes, panel: Panel) -> None:
     """Draw the levels that a quantity is judged against, each with its name."""
+    color = OUTCOME_COLORS["fails"]
     for limit in panel.limits:
-        color = OUTCOME_COLORS["fails"]
         axes.axhline(limit.value, color=color, linewidth=1.1, linestyle=(0, (7, 3)))
+    low, high = axes.get_ylim()
+    last = -np.inf
+    for limit in sorted(panel.limits, key=lambda limit: limit.value):
+        if limit.value - last < 2.0 * LABEL_ROOM * (high - low):
+            continue
+        last = limit.value
         axes.annotate(
             limit.label,
             (1.0, limit.value),
@@ -94,16 +107,20 @@ def _draw_limits(axes: Axes, panel: Panel) -> None:
 
 
 def _draw_events(axes: Axes, rec: Any, named: bool) -> None:
-    """Draw a thin line at each dated event of the scenario and where steady running starts."""
+    """Draw a thin line at each notable event, and where the lift counts as settled."""
     top = axes.get_xaxis_transform()
-    moments = [(event.at, event.kind.replace("_", " ")) for event in rec.scenario.event]
+    shown = [event for event in rec.events if is_notable(event) and event.time > rec.time[0]]
+    moments = [(event.time, event.kind.replace("_", " ")) for event in shown[:MAX_EVENTS]]
     settle = getattr(rec.scenario.run, "settle", None)
     if settle and settle < rec.time[-1]:
         moments.append((settle, "settled"))
-    for time, name in moments:
+    room = LABEL_ROOM * (rec.time[-1] - rec.time[0])
+    last = -np.inf
+    for time, name in sorted(moments):
         axes.axvline(time, color=FAINT, linewidth=0.8, linestyle=(0, (1, 2)))
-        if named:
+        if named and time - last > room:
             axes.text(time, 1.0, f" {name}", transform=top, fontsize=7.5, color=FAINT, va="bottom")
+            last = time
 
 
 def roomy(low: float, high: float) -> tuple[float, float]:
@@ -144,7 +161,7 @@ def panels_figure(rec: Any, panels: list[Panel]) -> Figure:
         _draw_limits(axes, panel)
         _draw_events(axes, rec, named=axes is all_axes[0])
         finish(axes, panel)
-        axes.set_xlim(rec.time[0], rec.time[-1])
+        axes.set_xlim(min(rec.time[0], 0.0), rec.time[-1])
     all_axes[-1].set_xlabel("time [s]")
     return figure
 
@@ -170,7 +187,7 @@ def overlay_figure(runs: list[tuple[str, Any]], panels: list[list[Panel]]) -> Fi
                 _draw_curve(axes, rec.time, curve, LINE_CYCLE[k % len(LINE_CYCLE)], name)
         _draw_limits(axes, shown)
         finish(axes, shown)
-        axes.set_xlim(min(rec.time[0] for _, rec in runs), max(rec.time[-1] for _, rec in runs))
+        axes.set_xlim(0.0, max(rec.time[-1] for _, rec in runs))
     all_axes[-1].set_xlabel("time [s]")
     return figure
 

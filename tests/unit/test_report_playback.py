@@ -75,7 +75,7 @@ def test_twenty_seconds_of_a_long_lift_stay_small():
     long = synthetic_recording(duration=20.0, links=120, rate=100.0)
     scene, frames = build_scene(long, judge(long))
     assert scene["rate"] == 50.0
-    assert len(frames) < 1_500_000
+    assert len(frames) < 1_150_000
 
 
 def test_too_much_motion_gets_fewer_moments(monkeypatch, recording):

@@ -119,6 +119,11 @@ def test_a_margin_beyond_the_gauge_points_outward_at_its_end():
     assert marker_x(margin_gauge(-9.0, 1.0, 0.2)) == pytest.approx(0.0)
 
 
-@pytest.mark.parametrize(("margin", "scale"), [(None, 1.0), (1.0, None), (float("nan"), 1.0)])
-def test_no_margin_is_said(margin, scale):
-    assert "no margin" in margin_gauge(margin, scale, 0.2)
+@pytest.mark.parametrize("margin", [None, float("nan")])
+def test_no_margin_is_said(margin):
+    assert "no margin" in margin_gauge(margin, 1.0, 0.2)
+
+
+@pytest.mark.parametrize("scale", [None, 0.0])
+def test_a_margin_without_a_scale_has_no_gauge(scale):
+    assert margin_gauge(1.0, scale, 0.2) == ""

@@ -24,7 +24,7 @@ function show() {
   slider.setAttribute("aria-valuetext", seconds(now.time) + " of " + seconds(last));
   const lines = [["Time", seconds(now.time)]];
   scene.readouts.forEach((entry, k) => {
-    lines.push([entry.label, (value("readouts", k) * entry.factor).toFixed(entry.digits) + " " + entry.unit]);
+    lines.push([entry.label, (value("readouts", k) * entry.factor).toFixed(entry.digits).replace("-", "\u2212") + " " + entry.unit]);
   });
   if (scene.slots || scene.held) lines.push(["Balls seated", String(counts.aboard)]);
   lines.push(["Links that push", String(counts.pushing)]);

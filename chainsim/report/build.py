@@ -25,7 +25,7 @@ from chainsim.report.build_chain import carriers_part, chain_part
 from chainsim.report.build_checks import checks_part
 from chainsim.report.build_direction import direction_part
 from chainsim.report.build_drive import drive_part
-from chainsim.report.build_line import Part
+from chainsim.report.build_line import SOURCE_TEXTS, Part
 from chainsim.report.build_order import order_part
 from chainsim.report.build_setting import takeup_part
 from chainsim.report.build_shaft import shaft_part
@@ -38,6 +38,7 @@ from chainsim.report.findings_view import grouped
 from chainsim.report.layout import layout_svg
 from chainsim.report.page import csp_hash, environment, resource
 from chainsim.report.text import BLIND_SPOTS, DEFERS, readable
+from chainsim.study.wear import WearStudy
 
 PARTS = (
     order_part,
@@ -87,7 +88,11 @@ class Head(NamedTuple):
 
 
 def render_build(
-    source: Any, path: str | Path, revision: str = "", day: date | None = None
+    source: Any,
+    path: str | Path,
+    revision: str = "",
+    day: date | None = None,
+    wear: WearStudy | None = None,
 ) -> tuple[Path, Path]:
     """Write the build sheet of a lift as a page and as CSV beside it.
 
@@ -101,6 +106,8 @@ def render_build(
         Revision to print; a blank to fill in where it is empty.
     day : date, optional
         Date to print; today by default.
+    wear : WearStudy, optional
+        What runs with the chain grown showed, to tell when a finding first fails.
 
     Returns
     -------
@@ -113,7 +120,7 @@ def render_build(
         If the layout is impossible.
     """
     page = Path(path)
-    case = case_of(source)
+    case = case_of(source, wear)
     parts = sheet_parts(case)
     head = sheet_head(case, revision, day or date.today())
     page.write_text(_html(case, head, parts), encoding="utf-8")
@@ -195,6 +202,7 @@ def _html(case: Case, head: Head, parts: list[Part]) -> str:
         title=f"Build sheet: {case.scenario.title or case.scenario.stem}",
         head=head,
         signatures=SIGNATURES,
+        sources=SOURCE_TEXTS,
         verdict=readable(verdict(case.findings, situations)) if case.findings else "",
         layout=Markup(layout_svg(case.lift)),
         parts=[part_view(part) for part in parts],

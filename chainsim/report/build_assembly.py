@@ -4,7 +4,8 @@ from __future__ import annotations
 
 from chainsim.report.build_case import Case
 from chainsim.report.build_direction import turning
-from chainsim.report.build_takeup import movable_axles, travel_of
+from chainsim.report.build_line import place_text
+from chainsim.report.build_takeup import movable_axles, resting_travel, travel_of, way_of
 from chainsim.report.layout_notes import mount_text
 
 
@@ -44,12 +45,14 @@ def assembly_steps(case: Case) -> list[str]:
         f"Lay the chain round {order}, in this order of travel, and close it at {n} links."
     )
     for k in movable:
-        mount, new = case.scenario.sprocket[k].mount, travel_of(case, k).new
+        mount = case.scenario.sprocket[k].mount
+        rest = resting_travel(case, k)
+        stands = rest if rest is not None else travel_of(case, k).new
+        x, y = (float(part) for part in stands * way_of(case, k))
         steps.append(
             f"Let {case.lift.wheels[k].name} down gently until the chain carries it "
-            f"({mount_text(mount)}); it comes to stand {abs(1e3 * new):.1f} mm "
-            f"{'above' if new > 0.0 else 'below'} its place on the drawing, within the band of the "
-            "checks."
+            f"({mount_text(mount)}); it comes to stand {place_text(case.across(x), y)} to the right "
+            "of and above its place on the drawing, within the band of the checks."
         )
     if not movable:
         steps.append("Set the screwed axle until the chain is taut without being strained.")

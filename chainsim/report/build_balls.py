@@ -12,6 +12,14 @@ from chainsim.report.build_pocket import pocket_of
 from chainsim.scenario.schema_balls import Discharge, Feed
 from chainsim.units import format_si
 
+FEEDS = {
+    "set down": "each ball is set down at rest in the next free pocket that passes",
+    "chute": "each ball is let go from the chute, whether a pocket is there or not",
+    "trough": "balls lie in a sloping trough, and the pockets scoop them",
+    "every pocket": "every empty pocket that passes is filled",
+}
+"""What each way of feeding means for the feeder."""
+
 
 def balls_part(case: Case) -> Part | None:
     """Write the balls, where they are set down and where they leave.
@@ -32,7 +40,7 @@ def balls_part(case: Case) -> Part | None:
     lines = [
         Line("diameter of a ball", balls.diameter, "m"),
         Line("mass of a ball", balls.mass, "kg", note=balls.material or ""),
-        Line("way of feeding", balls.feed.kind),
+        Line("way of feeding", balls.feed.kind, note=FEEDS[balls.feed.kind]),
     ]
     if balls.feed.rate is not None:
         lines.append(Line("balls fed", balls.feed.rate, "s-1", note=_jitter_text(balls.feed)))

@@ -20,6 +20,7 @@ from chainsim.model.wheels import chain_pitch, down_of, wheels_of
 from chainsim.report.text import findings_of
 from chainsim.scenario import Scenario
 from chainsim.scenario.schema_run import SITUATIONS
+from chainsim.study.wear import WearStudy
 
 
 @dataclass(frozen=True)
@@ -40,6 +41,8 @@ class Case:
         Findings of the run, none without one.
     situations_run, situations_not_run : tuple of str
         Situations that were simulated, and those that were not.
+    wear : WearStudy or None
+        What runs with the chain grown showed; None where there were none.
     """
 
     scenario: Scenario
@@ -49,6 +52,7 @@ class Case:
     findings: tuple[Any, ...]
     situations_run: tuple[str, ...]
     situations_not_run: tuple[str, ...]
+    wear: WearStudy | None = None
 
     @property
     def closed(self) -> Sized:
@@ -156,13 +160,15 @@ class Case:
         return None
 
 
-def case_of(source: Any) -> Case:
+def case_of(source: Any, wear: WearStudy | None = None) -> Case:
     """Gather what a build sheet is made from.
 
     Parameters
     ----------
     source : Scenario or Recording
         A lift, or one that was run.
+    wear : WearStudy, optional
+        What runs with its chain grown showed.
 
     Returns
     -------
@@ -187,6 +193,7 @@ def case_of(source: Any) -> Case:
         findings=() if is_scenario else tuple(findings_of(source)),
         situations_run=tuple(seen.run) if seen else (),
         situations_not_run=tuple(seen.not_run) if seen else SITUATIONS,
+        wear=wear,
     )
 
 

@@ -179,7 +179,8 @@ def _pocket_lines(case: Case, pocket: Pocket) -> Iterator[Line]:
     yield Line("play of the ball along the floor", form.play, "m", DRAWN)
     for wheel in case.lift.wheels:
         item = f"radius that carriers sweep round {wheel.name}"
-        note = "empty; keep everything that stands outside it"
+        loaded = 1e3 * swept_radius(case.lift, wheel, loaded=True)
+        note = f"empty; {loaded:.1f} mm with a ball; everything that stands keeps outside it"
         yield Line(item, swept_radius(case.lift, wheel), "m", DRAWN, note)
 
 

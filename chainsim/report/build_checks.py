@@ -4,13 +4,11 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator
-from functools import partial
 
 import numpy as np
 
 from chainsim import closed_forms as cf
 from chainsim.analysis.stops import overrun
-from chainsim.analysis.survey import Survey
 from chainsim.report.build_case import Case, steady_mean
 from chainsim.report.build_direction import run_back_line
 from chainsim.report.build_drive import driven_rate, reckoned_current, running_torque
@@ -22,10 +20,9 @@ from chainsim.report.build_line import (
     UNKNOWN,
     Line,
     Part,
-    known,
     ran_or_reckoned,
 )
-from chainsim.report.build_takeup import movable_axles, travel_of, way_of
+from chainsim.report.build_takeup import movable_axles, resting_travel, travel_of
 from chainsim.report.build_tolerances import PITCH_SHARE
 
 SPEED_BAND = 0.05
@@ -117,19 +114,14 @@ def _weight_line(case: Case, k: int) -> Line:
 
 def _rest_line(case: Case, k: int) -> Line:
     """Where a take-up comes to stand."""
-    new, rest = travel_of(case, k).new, case.simulated(partial(_rest_travel, case=case, k=k))
+    new, rest = travel_of(case, k).new, resting_travel(case, k)
     line = Line(f"{case.lift.wheels[k].name}: travel from the drawing, standing, empty", None, "m")
     line = ran_or_reckoned(line, rest, new)
-    middle = rest if known(rest) else new
+    middle = rest if rest is not None else new
     off = 0.5 * PITCH_SHARE * case.loop
     note = f"{line.note}; " if line.note else ""
     note += f"band for a chain {100 * PITCH_SHARE:g} % longer or shorter"
     return line._replace(low=middle - off, high=middle + off, note=note)
-
-
-def _rest_travel(s: Survey, case: Case, k: int) -> float:
-    """Travel of an axle in the first sample [m]."""
-    return float((s.center[0, k] - np.array(case.lift.wheels[k].center)) @ way_of(case, k))
 
 
 def _bounce_line(case: Case, name: str) -> Iterator[Line]:

@@ -22,6 +22,18 @@ from chainsim.report.build_line import (
 )
 from chainsim.scenario.schema_drive import Motor
 
+RAMPS = {
+    "smooth": "speed follows half a cosine: the controller must give it, a bare switch does not",
+    "linear": "speed grows evenly: the controller must give it, a bare switch does not",
+}
+"""What a shape of ramp asks of the controller."""
+
+REACTIONS = {
+    "frame": "the frame, by a torque arm",
+    "mount": "the hung unit, by its weight off the axle",
+}
+"""What a reaction is in a workshop's words."""
+
 SPEED_SHARE = 0.05
 """Band of the motor's speed to accept (dimensionless); our choice."""
 
@@ -105,14 +117,17 @@ def wanted_torques(case: Case) -> tuple[float, float] | None:
 def _load_lines(case: Case) -> Iterator[Line]:
     load, (mean, closed) = case.simulated(duty), running_torque(case)
     radius = case.lift.wheels[case.driven].radius
+    drive = case.scenario.drive
     yield Line("driven sprocket", case.lift.wheels[case.driven].name)
+    if drive.kind == "speed":
+        yield Line("starts and stops on a ramp of", drive.ramp, "s", note=RAMPS[drive.ramp_shape])
+    yield Line("what takes its torque", REACTIONS[drive.reaction])
     line = Line("speed of the driven sprocket", None, "rad s-1", note="mean over a turn")
     yield ran_or_reckoned(line, driven_rate(case), case.rate)
     yield ran_or_reckoned(Line("mean torque on it, running", None, "N m"), mean, closed)
     yield ran_or_reckoned(Line("r.m.s. torque, running", None, "N m"), load and load.rms_torque)
     start = (starting_pull(case.sized) * radius + (closed or 0.0)) if case.sized else None
-    note = "samples of the whole run; closed forms know running and starting only"
-    line = Line("peak torque", None, "N m", note=note)
+    line = Line("peak torque", None, "N m", note="whole run, starts and stops included")
     yield ran_or_reckoned(line, load and load.peak_torque, start)
     power = closed * case.rate if closed is not None else None
     line = Line("mechanical power, running", None, "W")

@@ -16,6 +16,16 @@ UNKNOWN = "NOT SIMULATED"
 CLOSED_ONLY = f"closed form, {UNKNOWN}"
 """How a value is known. What only a run can tell is `CLOSED_ONLY` or `UNKNOWN` without one."""
 
+SOURCE_TEXTS = (
+    (STATED, "stated there, or filled in and marked by its range"),
+    (DRAWN, "follows from the scenario's sizes"),
+    (CLOSED, "reckoned with a formula, steady running"),
+    (SIMULATED, "from the recorded run"),
+    (PRACTICE, "what workshops do; ask your own"),
+    (UNKNOWN, "only a run, or a measurement, can tell"),
+)
+"""What each way of knowing means, for the page."""
+
 NO_VALUE = "–"
 NO_BREAK = "\u00a0"
 

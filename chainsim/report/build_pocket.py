@@ -47,7 +47,7 @@ def pocket_of(lift: Lift) -> PocketForm:
     return lift.pocket
 
 
-def swept_radius(lift: Lift, wheel: Wheel) -> float:
+def swept_radius(lift: Lift, wheel: Wheel, loaded: bool = False) -> float:
     """Return how far from an axle the carriers reach as they go round it.
 
     Parameters
@@ -56,6 +56,8 @@ def swept_radius(lift: Lift, wheel: Wheel) -> float:
         The lift.
     wheel : Wheel
         The wheel.
+    loaded : bool
+        Whether a ball lies in its seat.
 
     Returns
     -------
@@ -68,7 +70,11 @@ def swept_radius(lift: Lift, wheel: Wheel) -> float:
     points = np.vstack([form.spine, [[0.0, 0.0]]])
     inward = wheel.side * wheel.radius * math.cos(half)
     reach = np.hypot(points[:, 0] - 0.5 * pitch, inward + points[:, 1])
-    return float(reach.max()) + form.half_wall
+    empty = float(reach.max()) + form.half_wall
+    if not loaded:
+        return empty
+    ball = math.hypot(form.seat[0] - 0.5 * pitch, inward + form.seat[1]) + lift.ball_radius
+    return max(empty, ball)
 
 
 def pocket_svg(lift: Lift, roller_diameter: float, mirrored: bool = False) -> str:

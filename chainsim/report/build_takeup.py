@@ -168,6 +168,27 @@ def travel_of(case: Case, k: int) -> Travel:
     return Travel(float(shift @ way_of(case, k)), worn, warm, cold, low, high)
 
 
+def resting_travel(case: Case, k: int) -> float | None:
+    """Return the travel of an axle before the start, its chain stretched by what hangs on it.
+
+    Parameters
+    ----------
+    case : Case
+        The lift.
+    k : int
+        Index of a movable axle (dimensionless).
+
+    Returns
+    -------
+    float or None
+        Along its way from the place on the drawing [m]; None without a run.
+    """
+    center = case.simulated(lambda s: s.center[0, k])
+    if center is None:
+        return None
+    return float((center - np.array(case.lift.wheels[k].center)) @ way_of(case, k))
+
+
 def _simulated_ends(case: Case, k: int) -> tuple[float, float]:
     """Ends of the travel in the run, an arm's angle turned into an arc [m]; NaN without a run."""
     name, mount = case.lift.wheels[k].name, case.scenario.sprocket[k].mount

@@ -16,12 +16,14 @@ from chainsim.report.build_case import Case
 from chainsim.report.build_line import (
     CLOSED,
     PRACTICE,
+    SIMULATED,
     STATED,
     UNKNOWN,
     Line,
     Part,
     ran_or_reckoned,
 )
+from chainsim.report.text import readable
 
 RUN_OUT_SHARE = 0.1
 """Share of the polygon's own speed variation that run-out may add (dimensionless); our choice."""
@@ -60,6 +62,7 @@ def tolerances_part(case: Case) -> Part:
         *_pitch_lines(case),
         *_pocket_lines(case),
         *_room_lines(case),
+        *_gap_lines(case),
         *_plane_lines(),
     ]
     text = "Hold these; other dimensions take what the workshop does without thinking."
@@ -158,6 +161,18 @@ def _excursion(s: Survey, strand: int, side: str) -> float | None:
     values = getattr(excursion(s, strand), side)[s.is_steady]
     known = values[np.isfinite(values)]
     return float(known.max()) if known.size else None
+
+
+def _gap_lines(case: Case) -> Iterator[Line]:
+    """Smallest gap of the run, and where."""
+    found = next((f for f in case.findings if f.name == "parts_keep_clear"), None)
+    if found is None or found.value is None or found.unit != "m":
+        return
+    least = case.scenario.limits.gap
+    note = readable(found.note.split(";")[0])
+    yield Line(
+        "smallest gap of parts that pass each other", found.value, "m", SIMULATED, note, least
+    )
 
 
 def _plane_lines() -> Iterator[Line]:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from chainsim import closed_forms as cf
 from chainsim.report.build_case import Case
-from chainsim.report.build_line import CLOSED, DRAWN, UNKNOWN, Line, Part
+from chainsim.report.build_line import CLOSED, DRAWN, SIMULATED, UNKNOWN, Line, Part
 from chainsim.report.build_takeup import movable_axles, travel_per_chain
 from chainsim.report.build_wheels import ride_height
 
@@ -57,9 +57,18 @@ def _limit_lines(case: Case) -> list[Line]:
             note = "all pins on the wheel sharing the load; the chain skips long before"
             item = f"growth at which pins reach the tips of {wheel.name}"
             lines.append(Line(item, tip, "share", CLOSED, note))
-    note = "chainsim limit FILE wear simulates it"
-    lines.append(Line("growth at which a finding first fails", None, "share", UNKNOWN, note))
-    return lines
+    return [*lines, _failure_line(case)]
+
+
+def _failure_line(case: Case) -> Line:
+    """Growth at which a finding first fails, where it was simulated."""
+    item, study = "growth at which a finding first fails", case.wear
+    if study is None:
+        return Line(item, None, "share", UNKNOWN, "chainsim limit FILE wear simulates it")
+    failure = study.first_failure
+    if failure is None:
+        return Line(item, "none that was run", source=SIMULATED, note=study.sentence)
+    return Line(item, failure.growth, "share", SIMULATED, study.sentence)
 
 
 def _step_lines(case: Case, growth: float) -> list[Line]:

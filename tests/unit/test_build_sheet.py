@@ -20,6 +20,7 @@ from chainsim.report.build_case import case_of
 from chainsim.report.build_line import SIMULATED, UNKNOWN
 from chainsim.report.build_setting import takeup_part
 from chainsim.scenario import parse_scenario
+from chainsim.study.wear import WearStep, WearStudy
 from tests.synthetic import synthetic_recording
 
 DAY = date(2026, 5, 4)
@@ -414,3 +415,28 @@ def test_hours_of_life_are_nowhere(drawn):
 def test_an_impossible_layout_is_refused():
     with pytest.raises(LayoutError):
         case_of(hung(**{"chain.links": 60, "sprocket.tail.mount.kind": "fixed"}))
+
+
+def test_growth_of_first_failure_is_taken_from_a_wear_study():
+    item = "growth at which a finding first fails"
+    blank = {"travel": {}, "travel_used": {}, "ride_height": {}, "ride_of_growth": {}}
+    steps = tuple(
+        WearStep(
+            growth, 1.12 * growth, **blank, fails=fails, close=(), outcome=outcome, stop_reason=""
+        )
+        for growth, fails, outcome in ((0.01, (), "holds"), (0.02, ("links_hold",), "fails"))
+    )
+    for study, value in (
+        (WearStudy(steps, "", 0.03), 0.02),
+        (WearStudy(steps[:1], "", 0.03), None),
+    ):
+        parts = sheet_parts(case_of(hung(), study))
+        line = next(line for part in parts for line in part.lines if line.item == item)
+        assert line.source == SIMULATED
+        assert line.value == (value if value is not None else "none that was run")
+    assert lines_of(hung())["", item].source == UNKNOWN
+
+
+def test_a_ramp_is_asked_of_the_controller_of_a_set_speed():
+    line = lines_of(hung(**{"drive.ramp": 0.8}))["", "starts and stops on a ramp of"]
+    assert line.value == pytest.approx(0.8) and "controller" in line.note

@@ -44,10 +44,12 @@ def normal_force(depth, closing, stiffness, dissipation, yielding):
     """
     elastic = stiffness * depth
     damping = elastic * dissipation
-    force = elastic + damping * closing / (1.0 + damping * yielding)
-    if force < 0.0:
-        force = 0.0
-    return force, force - elastic
+    share = 1.0 / (1.0 + damping * yielding)
+    damped = damping * closing * share
+    if elastic + damped < 0.0:
+        damped = -elastic
+    # the damper slows the pair within the step: it works at the mean of both rates
+    return elastic + damped, damped * 0.5 * (1.0 + share)
 
 
 @kernel
@@ -100,8 +102,10 @@ def hold(deflection, slip_rate, low, high, stiffness, damping, dt):
         force = low
     settled = elastic / stiffness
     if dt > 0.0:
-        stored = 0.5 * stiffness * (settled * settled - deflection * deflection)
-        return force, settled, 0.0, force * slip_rate - stored / dt
+        # what slips, at the mean pull of the step; a spring that only holds loses nothing
+        slipping = slip_rate - (settled - deflection) / dt
+        mean = 0.5 * stiffness * (settled + deflection)
+        return force, settled, 0.0, mean * slipping + (force - elastic) * slip_rate
     rate = slip_rate - RELAXATION * (deflection - settled)
     return force, deflection, rate, force * slip_rate - elastic * rate
 

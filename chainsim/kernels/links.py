@@ -220,7 +220,7 @@ def rub_joints(chain, deflection, rate, work, dt):
             new = elastic * compliance
             couple[i] = -elastic
             deflection[i] = new
-            loss[i] += elastic * slip * dt - 0.5 * k * (new * new - old * old)
+            loss[i] += 0.5 * k * (new + old) * (slip * dt - (new - old))
         elastic, new, lost = _rub_joint(chain, 0, n - 1, deflection[0], work, dt)
         couple[0] = -elastic
         deflection[0] = new
@@ -249,7 +249,7 @@ def _rub_joint(chain, i, before, old, work, dt):
     )
     elastic = min(max(k * (old + slip * dt), -limit), limit)
     new = elastic / k
-    return elastic, new, elastic * slip * dt - 0.5 * k * (new * new - old * old)
+    return elastic, new, 0.5 * k * (new + old) * (slip * dt - (new - old))
 
 
 @woven

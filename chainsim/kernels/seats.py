@@ -135,7 +135,8 @@ def watch_seats(pockets, seats, touches, state, gx, gy, per_window, zone_x, zone
         if seats.age[b] <= window or states[b] != SEATED:
             continue
         i = pocket.link
-        if state.x[i] * zone_x + state.y[i] * zone_y > zone:
+        # the zone begins where the pocket's link starts to turn: its leading pin meets the head
+        if state.x[i + 1] * zone_x + state.y[i + 1] * zone_y > zone:
             seats.judged[b] = 0
         if seats.judged[b] == 0:
             continue

@@ -194,7 +194,7 @@ def _world(lift: Lift) -> np.ndarray:
     world = np.zeros(1, WORLD)
     world["gx"], world["gy"] = scenario_gravity(lift)
     world["zone_x"], world["zone_y"] = lift.up
-    world["zone"] = lift.unload_height
+    world["zone"] = lift.unload_height - 0.5 * lift.scenario.chain.pitch
     world["per_window"] = 1.0 / seat_window(lift)
     world["margin"] = constants.SEARCH_MARGIN * lift.scenario.chain.pitch
     return world

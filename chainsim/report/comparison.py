@@ -125,10 +125,8 @@ def run_names(recs: Sequence[Any]) -> tuple[str, ...]:
 
 def input_differences(scenarios: Sequence[Any]) -> tuple[InputDifference, ...]:
     """Return every value that is not the same in all scenarios, in the order of the schema."""
-    tables = [
-        {leaf.key: leaf for leaf in leaves(s) if leaf.path[0] not in ("bench", "origin")}
-        for s in scenarios
-    ]
+    valued = {key for scenario in scenarios for key in scenario.origins()}
+    tables = [{leaf.key: leaf for leaf in leaves(s) if leaf.key in valued} for s in scenarios]
     found = []
     for key in dict.fromkeys(key for table in tables for key in table):
         own = [table.get(key) for table in tables]

@@ -29,7 +29,7 @@ TABLE_TITLES = {
     "study": "Studies",
 }
 
-HIDDEN_TABLES = ("bench", "origin", "format", "title", "view")
+HIDDEN_TABLES = ("bench", "resolved", "format", "title", "view")
 
 
 def shown_value(value: Any, unit_kind: str | None) -> str:

@@ -14,10 +14,12 @@ from chainsim.errors import CallError, RecordingError
 from chainsim.findings import judge
 from chainsim.report import compare, comparison_table, render_report
 from chainsim.report.cautions import cautions
+from chainsim.report.comparison import input_differences
 from chainsim.report.page import CONTENTS, report_html
 from chainsim.report.plots import PLOTS
 from chainsim.report.sizing import sizing_rows
 from chainsim.report.values import value_blocks
+from chainsim.scenario import parse_scenario
 from tests.synthetic import BALL_MASS, GRAVITY, PITCH, SEAT_RADIUS, synthetic_recording
 
 
@@ -148,6 +150,12 @@ def test_comparison_names_what_differs_and_the_change_of_margin(recording):
     assert seated.outcomes == ("fails", "holds")
     assert seated.margins[0] is None
     assert seated.changes == (None,)
+
+
+def test_comparison_of_scenarios_read_back_from_their_recordings(recording):
+    stored = parse_scenario(recording.scenario.resolved_toml(), file="stored.toml")
+    changed = stored.with_values({"chain.play": "0.05 mm"})
+    assert [d.key for d in input_differences([stored, changed])] == ["chain.play"]
 
 
 def test_comparison_on_the_terminal_needs_no_color(recording):

@@ -124,6 +124,12 @@ def limit_sentences(limit: Limit, estimate: Estimate) -> list[str]:
         said.append(f"Closed form: {shown(estimate.value)}; {estimate.text}.")
     else:
         said.append(f"Closed form: none; {estimate.text}.")
+    lost = [(probe.value, failure) for probe in limit.scan if (failure := probe.row.failure)]
+    if lost:
+        said.append(
+            f"{len(lost)} of {len(limit.scan)} runs could not be completed and count as failing, "
+            f"as at {shown(lost[0][0])}: {lost[0][1].text}"
+        )
     if sum(stretch.outcome == "fails" for stretch in limit.stretches) > 1:
         said.append("Pass and fail alternate: there are islands, listed below.")
     return said

@@ -12,14 +12,15 @@ from pathlib import Path
 from types import TracebackType
 from typing import Any, NamedTuple
 
+from chainsim.errors import RunError
 from chainsim.study.engines import Engine, cores
-from chainsim.study.jobs import SIMULATE
+from chainsim.study.jobs import PROGRAM_FAULT, SIMULATE
 from chainsim.study.plan import Keep
 from chainsim.study.points import Point, make_point
 from chainsim.study.portable import file_text
 from chainsim.study.processes import ProcessEngine
 from chainsim.study.rows import Row
-from chainsim.study.store import Store
+from chainsim.study.store import Store, rows_of
 from chainsim.study.sweep import run_points
 from chainsim.study.sweep_parts import Settings, Watcher
 
@@ -114,13 +115,17 @@ class Bench:
         Interrupted
             If the user asked to stop.
         RunError
-            If the disk is full or the set-up is wrong.
+            If the disk is full, the set-up is wrong, or a run ends in a fault of the program:
+            an answer that rests on it would be false.
         """
         points = [self._point(i, variant) for i, variant in enumerate(variants)]
         run_points(points, self.store, self._engine, self._settings, self._watcher)
         self.n_runs += len({point.id for point in points})
-        rows = [self.store.read(point.id) for point in points]
-        return [row for row in rows if row is not None]
+        rows = [row for row in rows_of(points, self.store) if row is not None]
+        for row in rows:
+            if row.failure is not None and row.failure.code == PROGRAM_FAULT:
+                raise RunError(f"a run ended in a fault of the program: {row.failure.text}")
+        return rows
 
     def _point(self, index: int, variant: Variant) -> Point:
         base = self.scenario if variant.base is None else variant.base

@@ -20,6 +20,8 @@ ONE_THREAD = ("NUMBA_NUM_THREADS", "OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS", "M
 # States of an outcome beside those of a row: the sweep has to stop on these two.
 NO_SPACE = "no space"
 SET_UP = "set-up is wrong"
+PROGRAM_FAULT = "error"
+"""Code of a failure that no scenario should be able to cause."""
 
 
 @dataclass(frozen=True)

@@ -38,9 +38,12 @@ class Probe:
         Returns
         -------
         str
-            `holds`, `close` or `fails`; a run that could not be completed fails.
+            `holds`, `close` or `fails`; a run that could not be completed fails, and where none of
+            the findings could be judged, all of the run's count.
         """
         word = outcome(self.row, names)
+        if word == "not judged":  # a lift that came apart is no lift that holds
+            word = outcome(self.row)
         return {"not completed": FAILS, "not judged": HOLDS}.get(word, word)
 
 

@@ -139,10 +139,13 @@ def _takeup(scenario: Any) -> Estimate:
     moving = sprocket.mount.mass if sprocket.mount.kind in ("spring", "counterweight") else 0.0
     wrap = wrapped_mass(scenario, sprocket)
     if sprocket is tail:
-        hung = least_hung_weight(payload, driven)
-        text = "weight of all that hangs = weight of the balls on the fullest carrying strand"
         if driven == "head":
-            text = "driven at the head, any hung weight keeps the carrying strand taut"
+            return Estimate(0.0, "driven at the head, any hung weight keeps the strand taut")
+        hung = hung_mass_with_friction(scenario)
+        text = (
+            "all that hangs weighs as much as the balls on the fullest carrying strand and the "
+            f"drag of the idle head (without friction {max(payload - wrap - moving, 0.0):.4g} kg)"
+        )
         pull = hung - wrap - moving
     else:
         strand = _mass_of_link(scenario) * height_of(scenario) / scenario.chain.pitch
@@ -150,8 +153,45 @@ def _takeup(scenario: Any) -> Estimate:
         text = "lifting force = head, both strands and balls"
         if driven == "tail":
             text += ", and the balls' weight once more"
+        text += " (without friction)"
     factor = scenario.frame.gravity if sprocket.mount.kind == "spring" else 1.0
-    return Estimate(max(pull, 0.0) * factor, f"{text} (free body, standing still)")
+    return Estimate(max(pull, 0.0) * factor, f"{text}; free body, running slowly")
+
+
+def hung_mass_with_friction(scenario: Any) -> float:
+    """Hung mass of a tail-driven lift at which the foot of its carrying strand goes slack.
+
+    Parameters
+    ----------
+    scenario : Scenario
+        A vertical lift on two sprockets, driven at its hanging tail.
+
+    Returns
+    -------
+    float
+        Mass of all that hangs, chain on its wrap included [kg].
+
+    Notes
+    -----
+    The idle head drags by its bearing, ``M_0 + μ_b r F``, and by the joints that bend onto it
+    and straighten off it, 2π/z each on every pitch, ``M_j + μ_j r_pin T``. All divided by the
+    pitch-wise lever z p / 2π, that is ``D = a F + b (T_in + T_out) + c``. At the threshold
+    the foot carries nothing, the head draws P + w in and W + w out, so that W = P + D gives
+    ``W (1 - a - b) = P + a (P + 2 w + w_h) + b (P + 2 w) + c``, with w the weight of one
+    empty strand and w_h that of the chain on the head. Joints that bend at the driven tail
+    are turned by the drive and do not enter. Derived here.
+    """
+    head = max(scenario.sprocket, key=lambda sprocket: sprocket.center[1])
+    gravity, joint = scenario.frame.gravity, scenario.chain.joint
+    payload = gravity * least_hung_weight(fullest_mass(scenario), "tail")
+    strand = gravity * _mass_of_link(scenario) * height_of(scenario) / scenario.chain.pitch
+    per_turn = 2.0 * math.pi / (head.teeth * scenario.chain.pitch)
+    a = per_turn * head.bearing_friction * 0.5 * head.axle_diameter
+    b = per_turn * joint.friction * joint.pin_radius
+    c = per_turn * (head.bearing_drag + 2.0 * joint.moment)
+    wrap = gravity * wrapped_mass(scenario, head)
+    drag = a * (payload + 2.0 * strand + wrap) + b * (payload + 2.0 * strand) + c
+    return (payload + drag) / (1.0 - a - b) / gravity
 
 
 def _speed(scenario: Any) -> Estimate:

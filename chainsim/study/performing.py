@@ -11,7 +11,7 @@ from collections.abc import Callable, Mapping
 from typing import Any
 
 from chainsim.errors import CallError, ChainsimError
-from chainsim.study.jobs import NO_SPACE, SET_UP, Job, Outcome
+from chainsim.study.jobs import NO_SPACE, PROGRAM_FAULT, SET_UP, Job, Outcome
 from chainsim.study.rows import DONE, FAILED, Failure, Row
 from chainsim.study.store import DiskFull, Store, is_full
 
@@ -123,7 +123,7 @@ def _row(job: Job) -> Row:
     except Exception as error:
         if is_full(error):
             raise DiskFull(*error.args) from None
-        return failed_row(job, "error", f"{type(error).__name__}: {error}")
+        return failed_row(job, PROGRAM_FAULT, f"{type(error).__name__}: {error}")
     how = {
         "seconds": round(time.perf_counter() - begin, 6),
         "host": socket.gethostname(),

@@ -5,7 +5,6 @@ from __future__ import annotations
 import functools
 import os
 import shutil
-from dataclasses import asdict
 from typing import Any
 
 from chainsim.study.jobs import Job, recording_path
@@ -42,7 +41,7 @@ def simulate(job: Job) -> dict[str, Any]:
     folder.mkdir(parents=True)
     recording = run(scenario, out=folder)
     result = result_of(recording)
-    os.replace(recording.path, kept)
+    os.replace(str(recording.path), kept)
     shutil.rmtree(folder)
     return result
 
@@ -100,7 +99,7 @@ def result_of(recording: Any) -> dict[str, Any]:
     from chainsim.analysis import run_summary
 
     return {
-        "findings": [asdict(finding) for finding in recording.findings],
+        "findings": [finding._asdict() for finding in recording.findings],
         "summary": run_summary(recording, findings=()),
         "stop_reason": recording.stop_reason,
     }

@@ -15,15 +15,18 @@ title = "A lift for tests, drive unit hung from the chain"
 kind = "moulded_sturdy"
 pitch = "10 mm"
 links = 112
+joint = { friction = 0.0 }
 
 [[sprocket]]
 name = "head"
 teeth = 8
+bearing_friction = 0.0
 center = ["0 mm", "520 mm"]
 
 [[sprocket]]
 name = "tail"
 teeth = 8
+bearing_friction = 0.0
 center = ["0 mm", "0 mm"]
 mount = { kind = "hung", mass = "0.30 kg" }
 

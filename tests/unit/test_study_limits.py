@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
+import numpy as np
 import pytest
 
-from chainsim.errors import CallError
+from chainsim.errors import CallError, RunError
 from chainsim.scenario import parse_scenario
 from chainsim.study.bench import Bench, Variant
 from chainsim.study.engines import SerialEngine
@@ -15,8 +16,10 @@ from chainsim.study.limit_questions import question, questions
 from chainsim.study.limits import find_limit
 from chainsim.study.mend import mend, sensible_keys
 from chainsim.study.portable import file_text
+from chainsim.study.rows import Row
 from chainsim.study.scenario_numbers import number_at
 from tests.unit.study_lift import LIFT, lift
+from tests.unit.study_tasks import finding
 
 LIFT_TASKS = "tests.unit.study_lift"
 # Free body: the hung weight (mount, and 4 links of the wrap with their carriers) equals that
@@ -253,3 +256,45 @@ def test_a_key_is_asked_both_ways_and_its_scan_is_run_once():
     assert down.fails.good.value == pytest.approx(THRESHOLD - wrap(lift()), rel=0.011)
     # Nine of the scan, two beyond each end where nothing fails, and the bisections.
     assert runs < 9 + 2 + 2 * 8 + 2
+
+
+def test_an_answer_never_rests_on_a_fault_of_the_program():
+    with bench() as one, pytest.raises(RunError, match="division by zero"):
+        broken = Bench(
+            lift(), one.store.folder, SerialEngine(), task="tests.unit.study_tasks:broken"
+        )
+        find_limit(question(lift(), "takeup"), broken)
+
+
+def test_the_drag_of_the_idle_head_adds_to_the_take_up():
+    # By iteration of the free body: tensions at the head give the drag, which shifts them.
+    rough = lift().with_values(
+        {
+            "chain.joint.friction": 0.2,
+            "sprocket.head.bearing_friction": 0.1,
+            "chain.joint.moment": 1e-5,
+        }
+    )
+    head, joint, g = rough.sprocket[0], rough.chain.joint, rough.frame.gravity
+    link = g * (rough.chain.link_mass + rough.carriers.mass / 4)
+    payload, strand, lever = g * THRESHOLD, 52 * link, 8 * 0.01 / (2 * np.pi)
+    hung = payload
+    for _ in range(60):
+        into, out = payload + strand, hung + strand
+        bearing = 0.1 * 0.5 * head.axle_diameter * (into + out + 4 * link)
+        joints = 2 * 1e-5 + joint.friction * joint.pin_radius * (into + out)
+        hung = payload + (bearing + joints) / lever
+    by_hand = hung / g - wrap(rough)
+    assert estimate(rough, "takeup").value == pytest.approx(by_hand, rel=1e-9)
+    assert estimate(rough, "takeup").value > 1.05 * estimate(lift(), "takeup").value
+
+
+def test_a_lift_that_came_apart_does_not_hold_where_its_finding_was_not_judged():
+    findings = (
+        finding("carrying_strand_taut", 0.1, "not judged"),
+        finding("chain_stays_on", -1.0, "fails"),
+    )
+    row = Row("a", "done", {}, "s", findings)
+    assert Probe(1.0, row).outcome(("carrying_strand_taut",)) == "fails"
+    calm = Row("b", "done", {}, "s", findings[:1])
+    assert Probe(1.0, calm).outcome(("carrying_strand_taut",)) == "holds"

@@ -243,3 +243,10 @@ def test_a_sweep_leaves_as_a_table_with_units(sweep, tmp_path):
     assert float(first["balls_stay_seated margin [N]"]) == pytest.approx(0.5)
     assert float(first["balls_ended [1]"]) == 50
     assert summary_unit("axle_load.tail") == "N" and summary_unit("ripple.2") == "1"
+
+
+def test_runs_that_could_not_be_completed_are_told_with_a_limit():
+    with bench() as one:
+        found = find_limit(question(lift(), "carriers.every", "1", "400"), one, n_scan=5)
+    said = limit_sentences(found, estimate(lift(), "carriers.every"))
+    assert any("could not be completed and count as failing" in sentence for sentence in said)

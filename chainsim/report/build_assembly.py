@@ -51,8 +51,8 @@ def assembly_steps(case: Case) -> list[str]:
         x, y = (float(part) for part in stands * way_of(case, k))
         steps.append(
             f"Let {case.lift.wheels[k].name} down gently until the chain carries it "
-            f"({mount_text(mount)}); it comes to stand {place_text(case.across(x), y)} to the right "
-            "of and above its place on the drawing, within the band of the checks."
+            f"({mount_text(mount)}). It comes to stand {place_text(case.across(x), y)} from its "
+            "place on the drawing, right and up, within the band of the checks."
         )
     if not movable:
         steps.append("Set the screwed axle until the chain is taut without being strained.")

@@ -6,6 +6,7 @@ from typing import Any, NamedTuple
 
 from chainsim.findings.finding import DOES_NOT_APPLY, FAILS, NOT_JUDGED
 from chainsim.report.build_case import Case
+from chainsim.report.text import quantity, unit_of
 
 NOT_FOR_BUILDING = "NOT FOR BUILDING"
 NOT_SIMULATED = "NOT SIMULATED"
@@ -98,5 +99,7 @@ def _speaks_against(finding: Any, has_balls: bool) -> bool:
 
 def _state(finding: Any) -> str:
     if finding.outcome == FAILS:
-        return "fails"
+        unit = unit_of(finding.name, finding.unit)
+        value = quantity(finding.value, unit) if finding.value is not None else "no value"
+        return f"fails ({value}, limit {quantity(finding.limit, unit)})"
     return f"not judged, {finding.why}" + (f" ({finding.note})" if finding.note else "")

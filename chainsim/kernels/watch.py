@@ -149,7 +149,7 @@ FEEDING = np.dtype(
         ("up_y", np.float64),
         ("load", np.float64),  # heights along up [m]
         ("unload", np.float64),
-        ("found", np.int64),  # free pocket that has just passed the loading height; -1: none
+        ("found", np.int64),  # free rising pocket that has just passed the loading height; -1: none
         ("leaving", np.int64),  # loaded pocket that has just passed the unloading height; -1: none
     ]
 )
@@ -181,7 +181,12 @@ def watch_feed(pockets, feeding, seats, touches, state, last_heights):
         now = sx * feeding.up_x + sy * feeding.up_y
         before = last_heights[k]
         last_heights[k] = now
-        if before < feeding.load <= now and feeding.waiting == 1 and feeding.found < 0:
+        i = pockets[k].link
+        rise = (state.x[i + 1] - state.x[i]) * feeding.up_x
+        rise += (state.y[i + 1] - state.y[i]) * feeding.up_y
+        # a pocket that shakes as it sinks past the loading height is not loaded
+        passing = before < feeding.load <= now and rise > 0.0
+        if passing and feeding.waiting == 1 and feeding.found < 0:
             taken = False
             for b in range(touches.used[0]):
                 taken = taken or (touches.state[b] >= FREE and seats.pocket[b] == k)

@@ -23,6 +23,7 @@ TABLE_ROWS = 16
 DRIVE = np.dtype(
     [
         ("wheel", np.int64),
+        ("n_wheels", np.int64),
         ("motor", np.int64),  # 0: speed profile
         ("on_mount", np.int64),  # 1: the unit carries the motor
         ("stiffness", np.float64),  # of the shaft [N m/rad]

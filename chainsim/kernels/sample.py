@@ -14,7 +14,7 @@ from chainsim.kernels.energy import (
     mount_energy,
     wheel_contact_energy,
 )
-from chainsim.kernels.jit import kernel
+from chainsim.kernels.jit import kernel, woven
 from chainsim.kernels.layout import DROP, LEDGER, LOSS_JOINT, LOSS_LINK, PER_WHEEL, SPIN, TURN
 from chainsim.kernels.march import march
 from chainsim.kernels.mounts import place_wheels
@@ -67,7 +67,7 @@ class Memory(NamedTuple):
     seat_low: np.ndarray  # (3,) smallest reserve of the block, its ball, its time
 
 
-@kernel
+@woven
 def write_sample(row, t, steps, parts, state, work, memory, rows):
     """Write row `row` of a block and clear the sums and extremes of the interval.
 
@@ -95,182 +95,238 @@ def write_sample(row, t, steps, parts, state, work, memory, rows):
     for i in range(n):
         rows.pin[row, i, 0], rows.pin[row, i, 1] = state.x[i], state.y[i]
         rows.pin_velocity[row, i, 0], rows.pin_velocity[row, i, 1] = state.vx[i], state.vy[i]
-    _write_tension(row, each, parts, work, memory, rows)
-    _write_wheels(row, each, parts, state, work, memory, rows)
-    _write_strands(row, n, parts.chain, state, work.frames, memory, rows)
-    _write_drive(row, t, each, parts, state, work, rows)
-    _write_balls(row, t, steps, parts, state, work, memory, rows)
+    _write_tension(rows.tension[row], each, n, work.links, memory.link_peak)
+    if parts.carrier_links.shape[0] > 0:
+        _correct_tension(
+            rows.tension[row],
+            rows.loaded[row],
+            each,
+            parts.world[0],
+            parts.carrier_links,
+            work.links.tx,
+            work.links.ty,
+            memory.carrier_pull,
+            memory.loaded,
+            work.touches.carrier_n,
+        )
+    _write_wheels(
+        rows.wheel[row],
+        each,
+        parts.wheels,
+        parts.mounts,
+        n,
+        state,
+        work.frames,
+        work.near,
+        work.wheel_sums,
+        work.watch,
+        memory.through,
+        memory.travel,
+        memory.first_angle,
+    )
+    _write_mounts(rows.wheel[row], each, parts.mounts, state.q, work.wheel_sums)
+    _write_strands(
+        rows.strand[row],
+        rows.tension[row],
+        n,
+        parts.chain,
+        state.x,
+        state.y,
+        work.frames,
+        memory.strand,
+        memory.through,
+    )
+    _write_drive(rows.drive[row], t, each, parts.drive[0], state.w, work.drive_sums)
+    _write_balls(
+        rows.ball[row],
+        t,
+        steps * work.step[0],
+        parts.law.mass > 0.0,
+        parts.pockets,
+        state,
+        work.links.tx,
+        work.links.ty,
+        work.seats,
+        work.touches,
+        memory.ball_vx,
+        memory.ball_vy,
+        memory.number,
+        memory.seat_low,
+    )
+    _write_losses(rows.energy[row], n, work.links.loss, work.links.loss_joint, state.ledger)
     _write_energy(row, parts, state, work, rows)
     rows.depth[row] = work.watch.penetration[0]
     work.watch.penetration[0] = 0.0
 
 
 @kernel
-def _write_tension(row, each, parts, work, memory, rows):
-    """Write mean tensions, without what an off-axis load puts into its own link's spring."""
-    links = work.links
-    for i in range(parts.chain.n):
-        rows.tension[row, i] = links.tension_sum[i] * each
-        if links.tension_peak[i] > memory.link_peak[0]:
-            memory.link_peak[0], memory.link_peak[1] = links.tension_peak[i], i
-        if links.tension_low[i] < memory.link_peak[2]:
-            memory.link_peak[2], memory.link_peak[3] = links.tension_low[i], i
+def _write_tension(out, each, n, links, link_peak):
+    """Write mean tensions, and keep the extremes of the block."""
+    for i in range(n):
+        out[i] = links.tension_sum[i] * each
+        if links.tension_peak[i] > link_peak[0]:
+            link_peak[0], link_peak[1] = links.tension_peak[i], i
+        if links.tension_low[i] < link_peak[2]:
+            link_peak[2], link_peak[3] = links.tension_low[i], i
         links.tension_sum[i] = 0.0
         links.tension_peak[i], links.tension_low[i] = -np.inf, np.inf
-    world = parts.world[0]
-    for k in range(parts.carrier_links.shape[0]):
-        i = parts.carrier_links[k]
-        across = world.gx * links.ty[i] - world.gy * links.tx[i]
-        own = memory.carrier_pull[k, 0] + memory.loaded[k] * memory.carrier_pull[k, 1]
-        rows.tension[row, i] -= own * across
-        if parts.law.mass > 0.0:
-            rows.tension[row, i] -= work.touches.carrier_n[k] * each
-            work.touches.carrier_n[k] = 0.0
-        rows.loaded[row, k] = memory.loaded[k]
 
 
 @kernel
-def _write_wheels(row, each, parts, state, work, memory, rows):
-    """Write what wheels and mounts do; follows the chain through every wheel."""
-    n = parts.chain.n
-    for s in range(parts.wheels.shape[0]):
+def _correct_tension(out, out_loaded, each, world, links, tx, ty, pull, loaded, carrier_n):
+    """Take out what an off-axis load puts into its own link's spring; write who is loaded."""
+    for k in range(links.shape[0]):
+        i = links[k]
+        across = world.gx * ty[i] - world.gy * tx[i]
+        own = pull[k, 0] + loaded[k] * pull[k, 1]
+        out[i] -= own * across + carrier_n[k] * each
+        carrier_n[k] = 0.0
+        out_loaded[k] = loaded[k]
+
+
+@kernel
+def _write_wheels(
+    out, each, wheels, mounts, n, state, frames, near, sums, watch, through, travel, first_angle
+):
+    """Write what wheels do; follows the chain through every wheel."""
+    for s in range(wheels.shape[0]):
         base = PER_WHEEL * s
-        wheel, out = parts.wheels[s], rows.wheel[row, s]
-        sums = work.wheel_sums[s]
-        out[0], out[1] = state.q[base + SPIN], state.w[base + SPIN]
-        out[2] = sums[2] * each
-        out[3], out[4] = work.frames.cx[s], work.frames.cy[s]
-        out[5], out[6] = sums[0] * each, sums[1] * each
-        now = chain_through(wheel, work.frames, s, work.near, state.x, state.y, n)
-        if now >= 0.0 and memory.through[s] >= 0.0:
-            moved = memory.through[s] - now
-            moved -= n * math.floor(moved / n + 0.5)
-            memory.travel[s] += moved
+        wheel = wheels[s]
+        out[s, 0], out[s, 1] = state.q[base + SPIN], state.w[base + SPIN]
+        out[s, 2] = sums[s, 2] * each
+        out[s, 3], out[s, 4] = frames.cx[s], frames.cy[s]
+        out[s, 5], out[s, 6] = sums[s, 0] * each, sums[s, 1] * each
+        now = chain_through(wheel, frames, s, near, state.x, state.y, n, through[s])
+        if now >= 0.0 and through[s] >= 0.0:
+            moved = through[s] - now
+            travel[s] += moved - n * math.floor(moved / n + 0.5)
         if now >= 0.0:
-            memory.through[s] = now
-        turned = (state.q[base + SPIN] - memory.first_angle[s]) * wheel.side
+            through[s] = now
+        turned = (state.q[base + SPIN] - first_angle[s]) * wheel.side
         seats = wheel.teeth * turned / (2.0 * math.pi)
-        out[7] = memory.travel[s] - seats if wheel.teeth > 0 else 0.0
-        out[8], out[9] = work.watch.ride[s], work.watch.engaged[s]
-        out[10] = state.q[base + TURN]
-        out[11] = state.q[base + TURN] if parts.mounts[s].arm == 1 else state.q[base]
-        out[12] = state.q[base + DROP] if parts.mounts[s].weight_mass > 0.0 else np.nan
-        out[13], out[14] = math.sqrt(work.watch.load[s]), sums[3]
-        work.watch.ride[s] = work.watch.load[s] = 0.0
-        sums[:] = 0.0
+        out[s, 7] = travel[s] - seats if wheel.teeth > 0 else 0.0
+        out[s, 8], out[s, 9] = watch.ride[s], watch.engaged[s]
+        out[s, 13] = math.sqrt(watch.load[s])
+        watch.ride[s] = watch.load[s] = 0.0
 
 
 @kernel
-def _write_strands(row, n, chain, state, frames, memory, rows):
+def _write_mounts(out, each, mounts, q, sums):
+    """Write where the mounts stand, and clear the sums of the wheels."""
+    for s in range(mounts.shape[0]):
+        base = PER_WHEEL * s
+        out[s, 10] = q[base + TURN]
+        out[s, 11] = q[base + TURN] if mounts[s].arm == 1 else q[base]
+        out[s, 12] = q[base + DROP] if mounts[s].weight_mass > 0.0 else np.nan
+        out[s, 14] = sums[s, 3]
+        sums[s, :] = 0.0
+
+
+@kernel
+def _write_strands(out, tension, n, chain, x, y, frames, strands, through):
     """Write excursion, sag and end tensions of every strand, between its two mid-wraps."""
-    for k in range(memory.strand.shape[0]):
-        strand, out = memory.strand[k], rows.strand[row, k]
-        a, b = int(strand[0]), int(strand[1])
-        ax, ay = frames.cx[a] + strand[2], frames.cy[a] + strand[3]
-        dx, dy = frames.cx[b] + strand[4] - ax, frames.cy[b] + strand[5] - ay
+    for k in range(strands.shape[0]):
+        a, b = int(strands[k, 0]), int(strands[k, 1])
+        ax, ay = frames.cx[a] + strands[k, 2], frames.cy[a] + strands[k, 3]
+        dx, dy = frames.cx[b] + strands[k, 4] - ax, frames.cy[b] + strands[k, 5] - ay
         length = math.sqrt(dx * dx + dy * dy)
         dx, dy = dx / length, dy / length
-        out[0], out[1], out[2], out[3] = 0.0, 0.0, np.nan, np.nan
-        if memory.through[a] < 0.0 or memory.through[b] < 0.0:
+        out[k, 0], out[k, 1], out[k, 2], out[k, 3] = 0.0, 0.0, np.nan, np.nan
+        if through[a] < 0.0 or through[b] < 0.0:
             continue
-        first = int(math.ceil(memory.through[a]))
-        last = int(math.floor(memory.through[b]))
-        count = (last - first) % n
-        for m in range(count + 1):
+        first = int(math.ceil(through[a]))
+        last = int(math.floor(through[b]))
+        for m in range((last - first) % n + 1):
             i = (first + m) % n
-            rx, ry = state.x[i] - ax, state.y[i] - ay
+            rx, ry = x[i] - ax, y[i] - ay
             along = rx * dx + ry * dy
             if along < 0.0 or along > length:
                 continue
             outward = rx * dy - ry * dx
-            if abs(outward) > abs(out[0]):
-                out[0] = outward
+            if abs(outward) > abs(out[k, 0]):
+                out[k, 0] = outward
             below = (rx - along * dx) * chain.gx + (ry - along * dy) * chain.gy
-            out[1] = max(out[1], below / chain.gravity)
-            if math.isnan(out[2]):
-                out[2] = rows.tension[row, i]
+            out[k, 1] = max(out[k, 1], below / chain.gravity)
+            if math.isnan(out[k, 2]):
+                out[k, 2] = tension[i]
             if along + chain.pitch[i] <= length:
-                out[3] = rows.tension[row, i]
+                out[k, 3] = tension[i]
 
 
 @kernel
-def _write_drive(row, t, each, parts, state, work, rows):
+def _write_drive(out, t, each, drive, w, sums):
     """Write what the drive does."""
-    drive, out = parts.drive[0], rows.drive[row]
     base = PER_WHEEL * drive.wheel
-    rotor = PER_WHEEL * parts.mounts.shape[0]
-    mount_rate = state.w[base + TURN] if drive.on_mount == 1 else 0.0
-    out[0], out[2] = work.drive_sums[0] * each, work.drive_sums[1] * each
+    mount_rate = w[base + TURN] if drive.on_mount == 1 else 0.0
+    out[0], out[2] = sums[0] * each, sums[1] * each
     out[3] = np.nan
     if drive.motor == 1:
-        rate = state.w[rotor] - mount_rate
-        out[1] = state.w[rotor]
+        rotor = PER_WHEEL * drive.n_wheels
+        rate = w[rotor] - mount_rate
+        out[1] = w[rotor]
         share = motor_torque(drive, rate) / drive.stall_torque
-        if drive.supply == SUPPLY_ON:
-            out[3] = drive.no_load_current + (drive.stall_current - drive.no_load_current) * abs(
-                share
-            )
-        else:
-            out[3] = 0.0
-        out[4] = drive.set_speed * drive.level * drive.forward if drive.supply == SUPPLY_ON else 0.0
+        fed = drive.supply == SUPPLY_ON
+        span = drive.stall_current - drive.no_load_current
+        out[3] = drive.no_load_current + span * abs(share) if fed else 0.0
+        out[4] = drive.set_speed * drive.level * drive.forward if fed else 0.0
     else:
         out[1] = demanded_rate(drive, t)
         out[4] = out[1] * drive.speed_per_rate * drive.forward
-    work.drive_sums[0] = work.drive_sums[1] = work.drive_sums[3] = 0.0
+    sums[0] = sums[1] = sums[3] = 0.0
 
 
 @kernel
-def _write_balls(row, t, steps, parts, state, work, memory, rows):
+def _write_balls(
+    out, t, interval, rolling, pockets, state, tx, ty, seats, touches, last_vx, last_vy, number, low
+):
     """Write the balls: rolling ones, or held ones where they ride."""
-    seats, touches = work.seats, work.touches
-    rolling = parts.law.mass > 0.0
-    for b in range(rows.ball.shape[1]):
-        out = rows.ball[row, b]
+    for b in range(out.shape[0]):
         kind = touches.state[b]
-        out[:] = np.nan
-        out[9], out[10], out[11] = -1.0, -1.0, kind
+        out[b, :] = np.nan
+        out[b, 9], out[b, 10], out[b, 11] = -1.0, -1.0, kind
         if kind < FREE:
             continue
         k = seats.pocket[b]
         if rolling:
             x, y, vx, vy = state.bx[b], state.by[b], state.bvx[b], state.bvy[b]
         else:
-            x, y = seat_place(parts.pockets[k], state)
-            vx, vy = seat_velocity(parts.pockets[k], state)
-        out[0], out[1], out[2], out[3] = x, y, vx, vy
-        per = 1.0 / (steps * work.step[0])
-        ax, ay = (vx - memory.ball_vx[b]) * per, (vy - memory.ball_vy[b]) * per
-        memory.ball_vx[b], memory.ball_vy[b] = vx, vy
+            x, y = seat_place(pockets[k], state)
+            vx, vy = seat_velocity(pockets[k], state)
+        out[b, 0], out[b, 1], out[b, 2], out[b, 3] = x, y, vx, vy
+        ax, ay = (vx - last_vx[b]) / interval, (vy - last_vy[b]) / interval
+        last_vx[b], last_vy[b] = vx, vy
+        out[b, 4], out[b, 5] = ax, ay
         if k >= 0:
-            i = parts.pockets[k].link
-            tx, ty = work.links.tx[i], work.links.ty[i]
-            out[4], out[5] = ax * ty - ay * tx, ax * tx + ay * ty
-        else:
-            out[4], out[5] = ax, ay
-        out[6] = state.spin[b] if rolling else 0.0
+            i = pockets[k].link
+            out[b, 4], out[b, 5] = ax * ty[i] - ay * tx[i], ax * tx[i] + ay * ty[i]
+        out[b, 6] = state.spin[b] if rolling else 0.0
         if kind == SEATED and seats.reserve[b] < np.inf:
-            out[7] = seats.reserve[b]
-            if seats.reserve[b] < memory.seat_low[0]:
-                memory.seat_low[0], memory.seat_low[1] = seats.reserve[b], memory.number[b]
-                memory.seat_low[2] = t
-        out[8] = touches.peak[b] if rolling else math.sqrt(ax * ax + ay * ay)
-        out[9], out[10] = memory.number[b], k
+            out[b, 7] = seats.reserve[b]
+            if seats.reserve[b] < low[0]:
+                low[0], low[1], low[2] = seats.reserve[b], number[b], t
+        out[b, 8] = touches.peak[b] if rolling else math.sqrt(ax * ax + ay * ay)
+        out[b, 9], out[b, 10] = number[b], k
         seats.reserve[b] = np.inf
         touches.peak[b] = 0.0
 
 
 @kernel
-def _write_energy(row, parts, state, work, rows):
-    """Write ledger and energies."""
-    out = rows.energy[row]
+def _write_losses(out, n, loss, loss_joint, ledger):
+    """Write the ledger, with the losses that every link and joint keeps for itself."""
     lost_links, lost_joints = 0.0, 0.0
-    for i in range(parts.chain.n):
-        lost_links += work.links.loss[i]
-        lost_joints += work.links.loss_joint[i]
+    for i in range(n):
+        lost_links += loss[i]
+        lost_joints += loss_joint[i]
     for k in range(KINETIC):
-        out[k] = state.ledger[k]
+        out[k] = ledger[k]
     out[LOSS_LINK] += lost_links
     out[LOSS_JOINT] += lost_joints
+
+
+@woven
+def _write_energy(row, parts, state, work, rows):
+    """Write the energies."""
+    out = rows.energy[row]
     world = parts.world[0]
     kinetic, lifted, stored = chain_energy(parts.chain, state)
     more = mount_energy(parts.mounts, parts.drive[0], world.gx, world.gy, state)

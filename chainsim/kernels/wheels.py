@@ -270,8 +270,11 @@ def press_wheels(wheels, frames, near, state, slip_rate, fx, fy, watch, dt):
 
 
 @kernel
-def chain_through(wheel, frames, s, near, x, y, n):
+def chain_through(wheel, frames, s, near, x, y, n, last):
     """Return the link index, with its fraction, at mid-wrap of a wheel; -1 where none lies there.
+
+    Where the ray at mid-wrap cuts the chain more than once, the cut nearest to the last one counts,
+    so that the count is followed continuously.
 
     Parameters
     ----------
@@ -284,6 +287,8 @@ def chain_through(wheel, frames, s, near, x, y, n):
         Pin positions [m].
     n : int
         Number of pins (dimensionless).
+    last : float
+        Index at the last look (dimensionless); negative: take the cut nearest to the axle.
     """
     mx, my = wheel.middle_x, wheel.middle_y
     best = 1e30
@@ -297,7 +302,11 @@ def chain_through(wheel, frames, s, near, x, y, n):
         before = (mx * ay - my * ax) * wheel.side
         behind = (mx * by - my * bx) * wheel.side
         ahead = mx * ax + my * ay
-        if before <= 0.0 < behind and ahead > 0.0 and ahead < best:
-            best = ahead
-            found = i + before / (before - behind)
+        if before <= 0.0 < behind and ahead > 0.0:
+            index = i + before / (before - behind)
+            off = index - last
+            apart = ahead if last < 0.0 else abs(off - n * math.floor(off / n + 0.5))
+            if apart < best:
+                best = apart
+                found = index
     return found

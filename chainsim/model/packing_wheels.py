@@ -237,6 +237,7 @@ def pack_drive(lift: Lift) -> np.ndarray:
     record = np.zeros(1, DRIVE)
     entry = record[0]
     entry["wheel"] = lift.driven
+    entry["n_wheels"] = len(lift.wheels)
     entry["on_mount"] = int(drive.reaction == "mount")
     entry["stiffness"] = drive.shaft.stiffness
     entry["damping"] = drive.shaft.damping

@@ -96,12 +96,16 @@ def fullest_mass(scenario: Any) -> float:
     Returns
     -------
     float
-        Mass [kg]: a strand that holds 5.8 balls on average holds 6 of them most of the time.
+        Mass [kg]: a strand that holds 5.8 balls on average holds 6 of them most of the time,
+        and one that starts loaded begins with a ball in every pocket.
     """
-    if scenario.balls is None:
+    balls, carriers = scenario.balls, scenario.carriers
+    if balls is None or carriers is None:
         return 0.0
-    balls = carried_mass(scenario) / scenario.balls.mass
-    return math.ceil(balls - _ROUNDING) * scenario.balls.mass
+    carried = carried_mass(scenario) / balls.mass
+    if balls.start == "loaded":
+        carried = (balls.unload_at - balls.load_at) / (carriers.every * scenario.chain.pitch)
+    return math.ceil(carried - _ROUNDING) * balls.mass
 
 
 def wrapped_mass(scenario: Any, sprocket: Any) -> float:

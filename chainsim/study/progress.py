@@ -68,10 +68,7 @@ class PlainProgress:
 
     def __init__(self, stream: TextIO | None = None) -> None:
         self._stream = stream or sys.stderr
-        self._started = self._spoken = time.monotonic()
-        self._pace = Pace(self._started)
-        self.planned = self.reused = self.done = self.failed = 0
-        self.failures: deque[Outcome] = deque(maxlen=_FAILURES_SHOWN)
+        self._restart(0, 0)
 
     def begin(self, planned: int, reused: int, engine: Engine) -> None:
         """Say how much is ahead.
@@ -83,9 +80,16 @@ class PlainProgress:
         engine : Engine
             What does the runs.
         """
-        self.planned, self.reused = planned, reused
-        self._pace = Pace(time.monotonic())
+        self._restart(planned, reused)
         self._say(f"{planned} runs, {reused} reused, {engine.workers} workers")
+
+    def _restart(self, planned: int, reused: int) -> None:
+        """Count from nothing: a search watches one go after the other."""
+        self._started = self._spoken = time.monotonic()
+        self._pace = Pace(self._started)
+        self.planned, self.reused = planned, reused
+        self.done = self.failed = 0
+        self.failures: deque[Outcome] = deque(maxlen=_FAILURES_SHOWN)
 
     def report(self, outcome: Outcome | None) -> None:
         """Count an outcome, and say where the sweep stands if it is time to.
@@ -118,6 +122,8 @@ class PlainProgress:
         share = (ended + self.reused) / max(self.planned, 1)
         passed = time.monotonic() - self._started
         rest = "" if ahead is None or not left else f", {duration_text(ahead)} left"
+        if not ended and left and passed > _LINE_EVERY:
+            rest = "; the first run of a new version compiles, which takes some minutes"
         return (
             f"{share:4.0%}  {self.done} done, {self.failed} failed, {self.reused} reused "
             f"of {self.planned}; {duration_text(passed)} passed{rest}"
@@ -151,8 +157,7 @@ class LiveProgress(PlainProgress):
         from rich.console import Console
         from rich.live import Live
 
-        self.planned, self.reused = planned, reused
-        self._pace = Pace(time.monotonic())
+        self._restart(planned, reused)
         self._note = f"{engine.workers} workers"
         self._live = Live(self._table(), console=Console(file=self._stream), refresh_per_second=4)
         self._live.start()

@@ -11,7 +11,7 @@ from chainsim.study.bench import Bench, Variant
 from chainsim.study.engines import SerialEngine
 from chainsim.study.heights import height_of, raised
 from chainsim.study.limit_answer import Probe
-from chainsim.study.limit_estimates import carried_mass, estimate, wrapped_mass
+from chainsim.study.limit_estimates import carried_mass, estimate, fullest_mass, wrapped_mass
 from chainsim.study.limit_questions import question, questions
 from chainsim.study.limits import find_limit
 from chainsim.study.mend import mend, sensible_keys
@@ -152,6 +152,10 @@ def test_a_thin_feed_carries_fewer_balls():
     thin = lift().with_values({"balls.feed.kind": "set down", "balls.feed.rate": "0.5 /s"})
     # Pockets come by at 0.04 m/s / 40 mm = 1 /s, so every other one is filled.
     assert carried_mass(thin) == pytest.approx(0.5 * THRESHOLD)
+    # 6.5 balls on average are 7 at the fullest moment; a loaded start fills all 13 pockets.
+    assert fullest_mass(thin) == pytest.approx(7 * 20e-3)
+    loaded = thin.with_values({"balls.start": "loaded"})
+    assert fullest_mass(loaded) == pytest.approx(THRESHOLD)
 
 
 def test_the_present_value_of_a_key_is_found_or_the_nearest_offered():

@@ -215,6 +215,15 @@ def test_plain_progress_is_lines_without_control_codes(store):
     assert "\x1b" not in text and "\r" not in text
 
 
+def test_progress_counts_each_go_from_nothing(store):
+    stream = io.StringIO()
+    watcher = PlainProgress(stream)
+    settings = Settings(task=f"{TASKS}:cheap")
+    for i in range(3):
+        run_points(points_of([{"mass": float(i)}]), store, SerialEngine(), settings, watcher)
+    assert stream.getvalue().count("100%  1 done, 0 failed, 0 reused of 1") == 3
+
+
 def test_pace_tells_the_time_left():
     pace = Pace(10.0)
     assert pace.left(5) is None

@@ -390,6 +390,8 @@ def kick_and_drift(state, rate, n, balls, dt):
 def derivative(t, parts, state, rate, work):
     """Write the time derivative of a state, for general methods.
 
+    Pins near wheels and guides are listed at every call; what balls may touch is listed by `relist`.
+
     Parameters
     ----------
     t : float
@@ -404,6 +406,11 @@ def derivative(t, parts, state, rate, work):
     """
     n = parts.chain.n
     close_loop(state, n)
+    margin = parts.world[0].margin
+    place_wheels(parts.mounts, state.q, state.w, work.frames)
+    find_near(parts.wheels, work.frames, state.x, state.y, n, margin, work.near)
+    if parts.guides.shape[0] > 0:
+        find_near_guides(parts.guides, state.x, state.y, n, margin, work.near_guides)
     evaluate(t, parts, state, rate, work, 0.0)
     lost = 0.0
     for i in range(n):
@@ -417,3 +424,19 @@ def derivative(t, parts, state, rate, work):
         rate.bx[b], rate.by[b], rate.spin[b] = state.bvx[b], state.bvy[b], state.bw[b]
     for k in range(work.power.shape[0]):
         rate.ledger[k] = work.power[k]
+
+
+@kernel
+def relist(parts, state, work):
+    """List anew what may touch what; known touches of balls keep their friction.
+
+    Parameters
+    ----------
+    parts : Parts
+    state : State
+        Ball friction deflections are rearranged.
+    work : Work
+        Its lists are overwritten.
+    """
+    close_loop(state, parts.chain.n)
+    search(parts, state, work, 1.0e-4)

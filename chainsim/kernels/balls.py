@@ -101,8 +101,14 @@ def find_touches(features, law, state, frames, reach, n, margin, touches):
         more_grip = (grip[base + 4], grip[base + 5], grip[base + 6], grip[base + 7])
         count = 0
         if touches.state[b] >= FREE:
-            count = _near_features(features, law, state, b, margin, what)
-            count = _near_bodies(law, state, frames, reach, touches, b, margin, what, count)
+            near = margin
+            count = TOUCHES + 1
+            # where more is near than fits, only what is nearer counts: a touch that is left out
+            # would be found later, deep inside
+            while count > TOUCHES and near > 0.1 * margin:
+                count = _near_features(features, law, state, b, near, what)
+                count = _near_bodies(law, state, frames, reach, touches, b, near, what, count)
+                near *= 0.5
         for k in range(TOUCHES):
             if k >= count:
                 what[b, k] = TOUCH_NONE
@@ -117,7 +123,7 @@ def find_touches(features, law, state, frames, reach, n, margin, touches):
 
 @kernel
 def _near_features(features, law, state, b, margin, what):
-    """Write the surface pieces near ball `b`; returns how many (dimensionless)."""
+    """Write the surface pieces near ball `b` that fit; returns how many there are."""
     count = 0
     px, py = state.bx[b], state.by[b]
     for f in range(features.shape[0]):
@@ -132,8 +138,9 @@ def _near_features(features, law, state, b, margin, what):
         ax, ay, bx, by = feature_ends(feature, state)
         cx, cy, _ = closest_on_piece(ax, ay, bx, by, px, py)
         limit = law.radius + feature.half + margin
-        if (cx - px) ** 2 + (cy - py) ** 2 < limit * limit and count < TOUCHES:
-            what[b, count] = f
+        if (cx - px) ** 2 + (cy - py) ** 2 < limit * limit:
+            if count < TOUCHES:
+                what[b, count] = f
             count += 1
     return count
 
@@ -144,16 +151,18 @@ def _near_bodies(law, state, frames, reach, touches, b, margin, what, count):
     px, py = state.bx[b], state.by[b]
     for s in range(reach.shape[0]):
         limit = reach[s] + law.radius + margin
-        if (frames.cx[s] - px) ** 2 + (frames.cy[s] - py) ** 2 < limit * limit and count < TOUCHES:
-            what[b, count] = TOUCH_WHEEL + s
+        if (frames.cx[s] - px) ** 2 + (frames.cy[s] - py) ** 2 < limit * limit:
+            if count < TOUCHES:
+                what[b, count] = TOUCH_WHEEL + s
             count += 1
     limit = 2.0 * law.radius + margin
     for other in range(b + 1, touches.used[0]):
         if touches.state[other] < FREE:
             continue
         distance2 = (state.bx[other] - px) ** 2 + (state.by[other] - py) ** 2
-        if distance2 < limit * limit and count < TOUCHES:
-            what[b, count] = TOUCH_BALL + other
+        if distance2 < limit * limit:
+            if count < TOUCHES:
+                what[b, count] = TOUCH_BALL + other
             count += 1
     return count
 

@@ -10,6 +10,7 @@ from chainsim import __version__
 from chainsim.cli.build import build
 from chainsim.cli.check import check
 from chainsim.cli.compare import compare
+from chainsim.cli.fit import fit
 from chainsim.cli.limit import limit
 from chainsim.cli.new import new
 from chainsim.cli.ready import ready
@@ -40,7 +41,7 @@ def commands() -> None:
     """
 
 
-for _command in (new, check, run, report, compare, sweep, limit, build, ready):
+for _command in (new, check, run, report, compare, sweep, limit, fit, build, ready):
     commands.add_command(_command)
 
 

@@ -20,9 +20,23 @@ def recording_unit(kind: str | None) -> str:
     """
     from chainsim.units import UNITS
 
-    if not kind or kind not in UNITS:
-        return "1"
-    above, _, below = next(iter(UNITS[kind])).partition("/")
+    return as_recorded(next(iter(UNITS[kind]))) if kind and kind in UNITS else "1"
+
+
+def as_recorded(unit: str) -> str:
+    """Return a unit as recordings write it.
+
+    Parameters
+    ----------
+    unit : str
+        As scenarios write it, such as ``"m/s2"``.
+
+    Returns
+    -------
+    str
+        Such as ``"m s-2"``; ``"1"`` where dimensionless.
+    """
+    above, _, below = unit.partition("/")
     parts = [part for part in above.split() if part != "1"]
     for part in below.split():
         name, power = re.fullmatch(r"(\D+)(\d*)", part).groups()  # type: ignore[union-attr]

@@ -84,15 +84,27 @@ def simulated(scenario: Any, folder: Path, force: bool, quiet: bool) -> Any:
     from chainsim.recording import open_recording
     from chainsim.recording.places import free_path, recording_path
     from chainsim.run import run as simulate
+    from chainsim.study.interrupts import StopRequest
 
     if not quiet and will_compile():
         say("compiling the kernels for this machine: once, about half a minute")
     progress = None if quiet else RunProgress(scenario.stem)
+
+    def follow(simulated: float, duration: float, wall: float) -> None:
+        if progress is not None:
+            progress(simulated, duration, wall)
+        if request.asked:
+            raise KeyboardInterrupt
+
     place = free_path(recording_path(folder, scenario.stem), force)
     begun = time.time()
     try:
-        return simulate(scenario, folder, force=force, progress=progress)
+        # a signal that comes inside compiled code or a file library can get lost there: it is
+        # noted, and acted upon when the block of samples is on its way
+        with StopRequest() as request:
+            return simulate(scenario, folder, force=force, progress=follow)
     except KeyboardInterrupt:
+        say("interrupted: judging what there is; once more to leave at once")
         if not _is_new(place, begun):
             raise Interrupted("interrupted before anything was recorded") from None
         return open_recording(place)

@@ -181,7 +181,7 @@ def _why_unknown(parameters: Sequence[Parameter], solution: Solution, i: int) ->
     half = float(solution.half[i])
     if parameters[i].from_zero:
         middle = float(solution.variables[i])
-        return f"its interval is {half / max(middle, 1.0) * 100:.0f} % to either side"
+        return f"its interval is {half / max(middle, 0.5) * 100:.0f} % to either side"
     return f"its interval spans a factor of {math.exp(min(2.0 * half, 99.0)):.3g}"
 
 

@@ -13,7 +13,10 @@ KNOWN_FACTOR = 1.5
 
 KNOWN_SHARE = 0.5
 """A parameter that may be zero counts as known when half its interval is below this share of its
-value, or of its usual size where it is smaller [dimensionless]."""
+value [dimensionless]."""
+
+KNOWN_NEAR_ZERO = 0.25
+"""So it does when half its interval is below this share of its usual size [dimensionless]."""
 
 
 class Parameter(NamedTuple):
@@ -74,7 +77,7 @@ class Parameter(NamedTuple):
             Middle and half width of the interval, as the fit works with it (dimensionless).
         """
         if self.from_zero:
-            return half <= KNOWN_SHARE * max(1.0, variable)
+            return half <= max(KNOWN_NEAR_ZERO, KNOWN_SHARE * variable)
         return half <= math.log(KNOWN_FACTOR)
 
 

@@ -124,6 +124,7 @@ def ball_spacing(scenario: Scenario, pitch: float) -> float:
         That of the places, or more where the feed brings fewer balls [m].
     """
     carriers, balls = scenario.carriers, scenario.balls
+    assert carriers is not None and balls is not None  # the caller has looked
     places = carriers.every * (balls.spacing or 1) * pitch
     filled = balls.start == "loaded" or balls.feed.kind == "every pocket"
     if filled or balls.feed.rate is None:
@@ -133,7 +134,9 @@ def ball_spacing(scenario: Scenario, pitch: float) -> float:
 
 def _loaded_length(scenario: Scenario, path: Route, k: int) -> float:
     """Return the length of strand `k` between the heights of loading and unloading [m]."""
-    low, high = sorted((scenario.balls.load_at, scenario.balls.unload_at))
+    balls = scenario.balls
+    assert balls is not None  # the caller has looked
+    low, high = sorted((balls.load_at, balls.unload_at))
     foot, head = sorted((float(path.start[k, 1]), float(path.end[k, 1])))
     inside = max(0.0, min(high, head) - max(low, foot))
     return inside / (head - foot) * float(path.length[k]) if head > foot else 0.0
@@ -236,7 +239,7 @@ def _take_up_force(
     force = weight
     if mount.kind == "spring":
         travel = float((np.array(wheel.center) - scenario.sprocket[k].center) @ axis)
-        force += mount.set_force - mount.rate * travel
+        force += mount.set_force - (mount.rate or 0.0) * travel
     elif mount.kind == "counterweight":
-        force += mount.weight * scenario.frame.gravity
+        force += (mount.weight or 0.0) * scenario.frame.gravity
     return abs(weight), force

@@ -87,9 +87,9 @@ def shaft_rows(sized: Sized) -> Iterator[Row]:
         The lift.
     """
     margin = whirl_margin(sized)
-    if math.isnan(margin):
-        return
     shaft = sized.scenario.drive.shaft
+    if math.isnan(margin) or shaft.length is None or shaft.diameter is None:
+        return
     material = SHAFT_MATERIALS[shaft.material or "steel"]
     span = shaft.length / (shaft.supports - 1)
     yield Row(

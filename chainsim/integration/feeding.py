@@ -6,6 +6,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
+from chainsim.integration.loading import change_load
 from chainsim.integration.samples import BallRow, Event
 from chainsim.integration.start import Prepared, place_ball
 from chainsim.kernels.balls import EMPTY, FREE, SEATED
@@ -97,7 +98,13 @@ class Feeder:
         self._order += 1
 
     def arrive(self, t: float) -> None:
-        """Let the ball that is due at time `t` [s] come."""
+        """Let the ball that is due come.
+
+        Parameters
+        ----------
+        t : float
+            Time [s].
+        """
         self._schedule()
         if self.skip_next > 0:
             self.skip_next -= 1
@@ -126,7 +133,10 @@ class Feeder:
         """Lay balls on the trough, the first at its lower end, until the queue is full."""
         lift = self.prepared.lift
         feed = lift.scenario.balls.feed
-        low, high = sorted(trough_line(lift), key=lambda point: point[1])
+        line = trough_line(lift)
+        if line is None:
+            return
+        low, high = sorted(line, key=lambda point: point[1])
         along = (high - low) / np.hypot(*(high - low))
         across = np.array([-along[1], along[0]]) * (1.0 if along[0] > 0 else -1.0)
         radius = lift.ball_radius
@@ -155,7 +165,15 @@ class Feeder:
         ]
 
     def set_down(self, t: float, carrier: int) -> None:
-        """Set the waiting ball down in a pocket that passes, at time `t` [s]."""
+        """Set the waiting ball down in a pocket that passes.
+
+        Parameters
+        ----------
+        t : float
+            Time [s].
+        carrier : int
+            (dimensionless)
+        """
         if self._kind == "set down":
             self.waiting -= 1
             self.waits.append(t - self._waiting_since.pop(0))
@@ -192,8 +210,6 @@ class Feeder:
 
     def _load_held(self, t: float, carrier: int) -> None:
         """Let a carrier take a ball that was at rest: momentum is shared, energy is lost."""
-        from chainsim.integration.loading import change_load
-
         change_load(self.prepared, carrier, 1)
         self._register(carrier, t, seated=True)
         self.events.append(Event(t, "fed", f"ball {self.count - 1}", carrier, "1", "ball set down"))
@@ -201,15 +217,27 @@ class Feeder:
     # ---- leaving ----------------------------------------------------------------------------
 
     def unload_held(self, t: float, carrier: int) -> None:
-        """Take a held ball off where it is delivered, at time `t` [s]."""
-        from chainsim.integration.loading import change_load
+        """Take a held ball off where it is delivered.
 
+        Parameters
+        ----------
+        t : float
+            Time [s].
+        carrier : int
+            (dimensionless)
+        """
         x, y = change_load(self.prepared, carrier, 0)
         ball = self.aboard.pop(carrier)
         self._close(ball, t, x, y, "delivered", "")
 
     def look(self, t: float) -> None:
-        """Act on what the kernels saw happen to the balls at time `t` [s]."""
+        """Act on what the kernels saw happen to the balls.
+
+        Parameters
+        ----------
+        t : float
+            Time [s].
+        """
         watch = self.prepared.watch
         for slot in np.flatnonzero(watch.happened):
             ball = self.aboard.get(int(slot))

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import numpy as np
+from scipy.sparse import diags
+from scipy.sparse.linalg import spsolve
 
 from chainsim.integration.start import Prepared
 from chainsim.kernels.balls import EMPTY, SEATED
@@ -74,6 +76,7 @@ def pin_velocities(state, n: int) -> np.ndarray:
     Returns
     -------
     ndarray of complex, shape (n_pins,)
+        [m/s].
     """
     return state.vx[:n] + 1j * state.vy[:n]
 
@@ -90,6 +93,7 @@ def times_masses(masses: PinMasses, velocity: np.ndarray) -> np.ndarray:
     Returns
     -------
     ndarray of complex, shape (n_pins,)
+        [kg m/s].
     """
     ahead = masses.coupling * np.roll(velocity, -1)
     behind = np.conj(np.roll(masses.coupling, 1)) * np.roll(velocity, 1)
@@ -120,10 +124,8 @@ def solve_masses(masses: PinMasses, momentum: np.ndarray) -> np.ndarray:
     Returns
     -------
     ndarray of complex, shape (n_pins,)
+        [m/s].
     """
-    from scipy.sparse import diags
-    from scipy.sparse.linalg import spsolve
-
     n = len(momentum)
     matrix = diags([masses.diagonal.astype(complex)], [0], format="lil")
     for i in np.flatnonzero(masses.coupling):

@@ -20,7 +20,7 @@ from chainsim.model.modes import natural_modes
 from chainsim.model.packing_balls import rolls
 
 OFF_SAMPLES = 25
-"""Samples in a row without a link at mid-wrap after which the chain counts as off [dimensionless]."""
+"""Samples in a row without a pin in contact after which a chain is off [dimensionless]."""
 
 LOGGED_SKIPS = 50
 """Largest number of tooth skips that are logged one by one [dimensionless]."""

@@ -125,6 +125,8 @@ class InnerStepper(OdeSolver):
         inner_step: float | None = None, max_step: float | None = None, **_extraneous,
     ) -> None:  # fmt: skip
         super().__init__(fun, t0, y0, t_bound, vectorized)
+        self.t: float = t0
+        self.y: np.ndarray = y0
         self.inner_step = inner_step or prepared.dt
         self._stretch = max_step or prepared.steps * prepared.dt
         self._packed = prepared.packed
@@ -201,7 +203,7 @@ def integrate(
     Returns
     -------
     ndarray, shape (n_state,)
-        Final state (mixed SI).
+        Final state [mixed SI].
 
     Raises
     ------

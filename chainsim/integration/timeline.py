@@ -99,7 +99,14 @@ class Conductor:
             self.reversed = -1.0
 
     def carry_out(self, action: Action, t: float) -> None:
-        """Do what an action says at time `t` [s], and log it."""
+        """Do what an action says, and log it.
+
+        Parameters
+        ----------
+        action : Action
+        t : float
+            Time [s].
+        """
         done = getattr(self, "_" + action.kind)(action.event, t)
         subject, value, unit, text = done
         self.events.append(Event(t, action.kind, subject, value, unit, text))

@@ -6,7 +6,7 @@ They stand for properties nobody measures (the stiffness of a tooth, of a stop).
 
 CONTACT_PER_LINK = 1.0
 """Contact stiffness of a pin on a tooth over that of a link [dimensionless]: at the working pull
-the pin then sinks in by less than a hundredth of the pitch, and the step stays that of the links."""
+the pin then sinks in by less than a hundredth of the pitch, and the links still set the step."""
 
 PIN_RESTITUTION = 0.5
 """Rebound of a pin on a tooth [dimensionless]; moulded plastic on plastic, assumed."""

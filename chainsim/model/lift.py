@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
@@ -64,7 +65,7 @@ class Lift:
         Along `up`, where pockets are filled and emptied [m].
     """
 
-    scenario: object
+    scenario: Any
     n_links: int
     pitch: np.ndarray
     wheels: tuple[Wheel, ...]

@@ -1,4 +1,4 @@
-"""Natural modes of the whole lift, linearized at rest: strands, and take-ups bouncing on the chain."""
+"""Natural modes of the whole lift, linearized at rest: strands, take-ups on the chain."""
 
 from __future__ import annotations
 
@@ -15,7 +15,7 @@ from chainsim.model.lift import Lift
 from chainsim.model.packing import Packed
 
 MOST_LINKS = 600
-"""Links beyond which modes are not worked out [dimensionless]: the dense problem grows too large."""
+"""Links beyond which modes are not worked out [dimensionless]: the dense problem grows large."""
 
 KEPT = 40
 """Number of modes that are kept, from the lowest on [dimensionless]."""

@@ -273,7 +273,8 @@ def _place(lift: Lift, state: State) -> None:
         travel = float(lift.laid.travel[s])
         kind = sprocket.mount.kind
         if kind == "arm":
-            arm = np.subtract(lift.wheels[s].center, lift.wheels[s].pivot)
+            pivot = lift.wheels[s].pivot or (0.0, 0.0)
+            arm = np.subtract(lift.wheels[s].center, pivot)
             state.q[base + 2] = travel / float(np.hypot(*arm))
         elif kind == "hung":
             state.q[base] = -travel

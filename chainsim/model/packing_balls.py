@@ -76,10 +76,10 @@ def pack_features(lift: Lift) -> np.ndarray:
     for wall in lift.scenario.wall:
         line = _behind(np.asarray(wall.points, float))
         pieces.append(_pieces(lift, line, WALL_HALF, wall.friction, wall.restitution))
-    for line in (chute_line(lift), trough_line(lift)):
-        if line is not None:
+    for floor in (chute_line(lift), trough_line(lift)):
+        if floor is not None:
             pieces.append(
-                _pieces(lift, _behind(line), WALL_HALF, balls.friction, balls.restitution)
+                _pieces(lift, _behind(floor), WALL_HALF, balls.friction, balls.restitution)
             )
     along_link = np.array([[0.0, 0.0], [1.0, 0.0]])
     roller = 0.5 * lift.scenario.chain.roller_diameter
@@ -155,7 +155,7 @@ def chute_line(lift: Lift) -> np.ndarray | None:
     length = 6.0 * balls.diameter
     lip = np.asarray(discharge.at, float)
     far = lip + length * np.array([side * math.cos(discharge.slope), -math.sin(discharge.slope)])
-    return np.array([far, lip]) if side > 0 else np.array([lip, far])[::-1][::-1]
+    return np.array([far, lip]) if side > 0 else np.array([lip, far])
 
 
 def trough_line(lift: Lift) -> np.ndarray | None:

@@ -1,4 +1,4 @@
-"""Packs carriers: constant mass matrices of their pins, factored once, and gravity's mass moments."""
+"""Packs carriers: constant mass matrices of their pins, factored once, and mass moments."""
 
 from __future__ import annotations
 
@@ -224,7 +224,12 @@ def _blocks(runs, diagonal, coupling, n: int) -> Blocks:
 
 def _bands(runs, diagonal, coupling, n: int) -> Bands:
     """Factor the tridiagonal Hermitian matrices of runs of carriers (L D L^H)."""
-    offsets, cyclic, pivots, lowers, spikes, closings = [0], [], [], [], [], []
+    offsets: list[int] = [0]
+    cyclic: list[int] = []
+    pivots: list[float] = []
+    lowers: list[complex] = []
+    spikes: list[complex] = []
+    closings: list[tuple[complex, complex]] = []
     for run in runs:
         closes = len(run) == n
         pins = run if closes else [*run, (run[-1] + 1) % n]

@@ -1,9 +1,10 @@
-"""Pockets: from named shapes and outlines to surfaces, the resting place of a ball, and its cone."""
+"""Pockets: from shapes and outlines to surfaces, the resting place of a ball, and its cone."""
 
 from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 
@@ -161,7 +162,7 @@ def _rest_heights(spine: np.ndarray, reach: float) -> tuple[np.ndarray, np.ndarr
         inside = np.abs(places - b) < reach
         rise = np.sqrt(np.maximum(reach**2 - (places - b) ** 2, 0.0))
         heights = np.where(inside, np.maximum(heights, a + rise), heights)
-    for (a0, b0), (a1, b1) in zip(spine[:-1], spine[1:], strict=True):
+    for (a0, b0), (a1, b1) in pairwise(spine):
         length = math.hypot(a1 - a0, b1 - b0)
         # unit normal on the ball's side; straight pieces carry the ball only where it looks up
         normal = np.array([b1 - b0, -(a1 - a0)]) / length

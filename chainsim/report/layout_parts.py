@@ -172,6 +172,7 @@ def on_link(lift: Lift, link: int, points: np.ndarray) -> np.ndarray:
 
 def _stem(lift: Lift) -> np.ndarray:
     """Return the shortest way from a link to its pocket, in the link's frame [m]."""
+    assert lift.pocket is not None  # drawn only where there are pockets
     outline_points = lift.pocket.outline
     near = outline_points[int(np.argmin(np.abs(outline_points[:, 1])))]
     return np.array([[min(max(near[0], 0.0), lift.route.pitch), 0.0], near])
@@ -184,7 +185,8 @@ def _standing(lift: Lift) -> list[Shape]:
         if guide.kind == "straight":
             shapes.append(Shape("guide", np.array([guide.start, guide.end])))
         else:
-            angle = np.linspace(*guide.angles, SHOE_POINTS)
+            first, last = guide.angles
+            angle = np.linspace(first, last, SHOE_POINTS)
             arc = guide.radius * np.column_stack([np.cos(angle), np.sin(angle)])
             shapes.append(Shape("guide", np.array(guide.center) + arc))
     shapes += [

@@ -23,6 +23,9 @@ from chainsim.model.packing_balls import rolls, trough_line
 
 NEVER = float("inf")
 
+SECOND_RISE = 0.6
+"""How far up, over how far out, a second ball lies on one that sits [dimensionless]."""
+
 
 @dataclass
 class Ball:
@@ -194,13 +197,15 @@ class Feeder:
         self._tell_kernel()
 
     def _set_second(self, t: float, first: int) -> None:
-        """Set a second ball down on top of one that sits."""
+        """Let a second ball lean on one that sits, from outside and above, where there is room."""
         state = self.prepared.packed.state
         slot = self._free_slot()
-        up = np.asarray(self.prepared.lift.up)
-        lift_by = 2.0 * self.prepared.lift.ball_radius
-        state.bx[slot] = state.bx[first] + lift_by * up[0]
-        state.by[slot] = state.by[first] + lift_by * up[1]
+        i = int(self.prepared.packed.parts.pockets["link"][self.aboard[first].pocket])
+        out = np.array([state.y[i + 1] - state.y[i], state.x[i] - state.x[i + 1]])
+        lean = out / np.hypot(*out) + SECOND_RISE * np.asarray(self.prepared.lift.up)
+        step = 2.0 * self.prepared.lift.ball_radius * lean / np.hypot(*lean)
+        state.bx[slot] = state.bx[first] + step[0]
+        state.by[slot] = state.by[first] + step[1]
         state.bvx[slot], state.bvy[slot] = state.bvx[first], state.bvy[first]
         state.bw[slot] = state.spin[slot] = 0.0
         self._put(slot, t)

@@ -38,7 +38,7 @@ def _cache_folder() -> str:
 # level 3 takes a third longer to compile and runs no faster here (benchmarks/README.md)
 os.environ.setdefault("NUMBA_OPT", "2")
 numba.config.reload_config()
-numba.config.CACHE_DIR = _cache_folder()
+numba.config.CACHE_DIR = _cache_folder()  # type: ignore[attr-defined]
 # the kernels' arrays never overlap, but the compiler can't know: let it test that in front of a
 # loop over many arrays, rather than give up on vector instructions
 llvmlite.binding.set_option("", "-runtime-memory-check-threshold=128")

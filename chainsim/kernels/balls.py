@@ -1,8 +1,8 @@
 """Balls: spheres that roll in the plane, on pockets, walls, chain, wheels and each other.
 
-Every surface a ball can touch is a chain of straight pieces with a round cross-section (a capsule):
-the distance to it is smooth, a thin lip has two sides and can't pull a ball through, a convex corner
-belongs to one piece, and a concave corner gives two contacts.
+Every surface a ball can touch is a chain of straight pieces with a round cross-section (capsules):
+the distance to it is smooth, a thin lip has two sides and can't pull a ball through, a convex
+corner belongs to one piece, and a concave corner gives two contacts.
 """
 
 import math

@@ -1,8 +1,8 @@
 """Carriers rigid on their links: the constant mass matrix of pins that carry something off-axis.
 
 Place, velocity, force and mass of a point of a carrier come from one map of the link's two pins,
-``z = (1 - c) z_i + c z_j`` with complex ``c = (a - i b) / p`` for the point ``a`` along the link and
-``b`` out of the loop, so that work is exact and the mass matrix has no velocity terms.
+``z = (1 - c) z_i + c z_j`` with complex ``c = (a - i b) / p`` for the point ``a`` along the link
+and ``b`` out of the loop, so that work is exact and the mass matrix has no velocity terms.
 """
 
 from typing import NamedTuple

@@ -28,8 +28,8 @@ def normal_force(depth, closing, stiffness, dissipation, yielding):
         (`chainsim.closed_forms`).
     yielding : float
         Inner step over the smaller mass of the pair [s/kg]; 0 for a general method.  The damper is
-        then taken at the velocity that it leaves, ``c v / (1 + c yielding)``, so that a deep contact
-        can't overshoot; the law above is its limit for small steps.
+        then taken at the velocity that it leaves, ``c v / (1 + c yielding)``, so that a deep
+        contact can't overshoot; the law above is its limit for small steps.
 
     Returns
     -------

@@ -115,11 +115,11 @@ def drive_wheel(t, drive, frames, q, w, held, held_rate, accel, reaction, dt):
     drive : record of DRIVE
     frames : Frames
         Torque on the driven wheel [N m]; added to.
-    q, w : ndarray
-        Generalized coordinates and rates.
-    held, held_rate : ndarray
+    q, w : ndarray, shape (5 n_wheels + 1,)
+        Generalized coordinates [m, rad] and rates.
+    held, held_rate : ndarray, shape (6 n_wheels + 2,)
         Friction deflections [rad] and their rates.
-    accel : ndarray
+    accel : ndarray, shape (5 n_wheels + 1,)
         Last entry, the rotor's acceleration [rad/s2]; overwritten.
     reaction : ndarray, shape (n_wheels,)
         Torque on each mount [N m]; overwritten.

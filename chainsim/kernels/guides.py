@@ -36,7 +36,7 @@ class NearGuides(NamedTuple):
 
     pin: np.ndarray
     guide: np.ndarray
-    count: np.ndarray  # (1,)
+    count: np.ndarray  # type: ignore[assignment]  # (1,) int
 
 
 @kernel

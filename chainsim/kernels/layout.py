@@ -8,7 +8,6 @@ from typing import NamedTuple
 
 import numpy as np
 
-
 #: floats in one 64-byte cache line; sections are padded to it
 LINE = 8
 #: generalized coordinates of one wheel and its mount: two shifts, mount angle, wheel angle, weight
@@ -87,7 +86,13 @@ class State(NamedTuple):
 
 
 def padded(count):
-    """Return `count` rounded up to whole cache lines (dimensionless)."""
+    """Return a count rounded up to whole cache lines.
+
+    Parameters
+    ----------
+    count : int
+        (dimensionless)
+    """
     return -(-count // LINE) * LINE
 
 

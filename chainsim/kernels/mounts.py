@@ -1,7 +1,7 @@
 """Mounts of the wheels: rigid bodies with friction that holds, stops, springs, a counterweight.
 
 A mount moves in at most two directions and one turn.  ``planar``: the axle stands at
-``home + g0 e0 + g1 e1`` and the body may turn about it; ``arm``: the whole body turns about a pivot.
+``home + g0 e0 + g1 e1`` and the body may turn about it; ``arm``: the body turns about a pivot.
 """
 
 import math
@@ -112,16 +112,16 @@ def move_mounts(mounts, frames, q, w, held, held_rate, gx, gy, reaction, accel, 
     mounts : ndarray of MOUNT, shape (n_wheels,)
     frames : Frames
         Forces [N] and torques [N m] of chain, balls and shaft on the wheels.
-    q, w : ndarray
-        Generalized coordinates and rates.
+    q, w : ndarray, shape (5 n_wheels + 1,)
+        Generalized coordinates [m, rad] and rates [m/s, rad/s].
     held, held_rate : ndarray, shape (6 n_wheels + 2,)
-        Friction deflections (advance in place where ``dt > 0``) and their rates.
+        Friction deflections [m, rad] (advance in place where ``dt > 0``) and their rates.
     gx, gy : float
         Gravity, less the frame's acceleration [m/s2].
     reaction : ndarray, shape (n_wheels,)
         Torque of the drive on each mount [N m].
-    accel : ndarray
-        Generalized accelerations; overwritten.
+    accel : ndarray, shape (5 n_wheels + 1,)
+        Generalized accelerations [m/s2, rad/s2]; overwritten.
     stop_force : ndarray, shape (n_wheels,)
         Push of the stops [N]; overwritten.
     dt : float

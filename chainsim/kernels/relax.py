@@ -19,7 +19,7 @@ def residual(mounts, wheels, law, used, n, fx, fy, w_rate, ax, ay):
     fx, fy : ndarray, shape (n_pins,)
         Force on the pins [N].
     w_rate : ndarray, shape (5 n_wheels + 1,)
-        Generalized accelerations.
+        Generalized accelerations [m/s2, rad/s2].
     ax, ay : ndarray, shape (balls,)
         Accelerations of the balls [m/s2].
     """

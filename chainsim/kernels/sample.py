@@ -44,11 +44,14 @@ class Rows(NamedTuple):
 
 #: columns of `Rows.wheel`
 WHEEL_COLUMNS = (
-    "angle rate torque center_x center_y force_x force_y skip ride engaged "
-    "turn travel drop load stop"
-).split()
+    *("angle", "rate", "torque", "center_x", "center_y", "force_x", "force_y", "skip", "ride"),
+    *("engaged", "turn", "travel", "drop", "load", "stop"),
+)
 #: columns of `Rows.ball`
-BALL_COLUMNS = "x y vx vy lateral longitudinal angle reserve peak number pocket state".split()
+BALL_COLUMNS = (
+    *("x", "y", "vx", "vy", "lateral", "longitudinal", "angle", "reserve", "peak"),
+    *("number", "pocket", "state"),
+)
 
 
 class Memory(NamedTuple):
@@ -234,8 +237,8 @@ def _write_strands(out, tension, n, chain, x, y, frames, strands, through):
         out[k, 0], out[k, 1], out[k, 2], out[k, 3] = 0.0, 0.0, np.nan, np.nan
         if through[a] < 0.0 or through[b] < 0.0:
             continue
-        first = int(math.ceil(through[a]))
-        last = int(math.floor(through[b]))
+        first = math.ceil(through[a])
+        last = math.floor(through[b])
         for m in range((last - first) % n + 1):
             i = (first + m) % n
             rx, ry = x[i] - ax, y[i] - ay

@@ -56,7 +56,7 @@ class Near(NamedTuple):
     wheel: np.ndarray  # (capacity,) int
     seat_x: np.ndarray  # (capacity,) unit vector of the seat last found, in the wheel's frame
     seat_y: np.ndarray
-    count: np.ndarray  # (1,) int
+    count: np.ndarray  # type: ignore[assignment]  # (1,) int
 
 
 class Frames(NamedTuple):

@@ -13,8 +13,7 @@ from chainsim.cli.main import commands
 from chainsim.cli.quantities import recording_unit
 from chainsim.scenario import LAYOUTS, json_schema, parse_scenario, starter
 
-SCENARIOS = Path(__file__).parents[1] / "scenarios"
-DEMO = SCENARIOS / "head-driven.toml"
+LIFT = Path(__file__).parent / "data" / "foyer.toml"
 HEAVY = ("numpy", "scipy", "numba", "h5py", "matplotlib", "pydantic", "rich", "jinja2")
 
 
@@ -31,10 +30,10 @@ def spawned(*arguments, cwd=None):
 
 @pytest.fixture
 def broken(write_scenario):
-    """Write the demo with a text replaced by another; the path."""
+    """Write the lift with a text replaced by another; the path."""
 
     def write(old: str, new: str) -> Path:
-        text = DEMO.read_text(encoding="utf-8")
+        text = LIFT.read_text(encoding="utf-8")
         assert old in text
         return write_scenario(text.replace(old, new), "broken.toml")
 
@@ -128,7 +127,7 @@ def test_schema_is_that_of_the_package():
 
 
 def test_check_draws_and_sizes_within_80_columns():
-    done = chainsim("check", DEMO, "--full")
+    done = chainsim("check", LIFT, "--full")
     assert done.exit_code == 0
     lines = done.stdout.splitlines()
     assert max(map(len, lines)) <= 80
@@ -145,11 +144,11 @@ def test_check_simulates_nothing(monkeypatch):
 
     for name in [n for n in vars(motion) if callable(getattr(motion, n)) and not n.startswith("_")]:
         monkeypatch.setattr(motion, name, refuse)
-    assert chainsim("check", DEMO).exit_code == 0
+    assert chainsim("check", LIFT).exit_code == 0
 
 
 def test_check_as_json_gives_sheet_and_values():
-    done = chainsim("check", DEMO, "--json", "--full")
+    done = chainsim("check", LIFT, "--json", "--full")
     data = json.loads(done.stdout)
     assert data["links"] == 112
     assert [choice["links"] for choice in data["link_choices"]] == [111, 112, 113]
@@ -166,7 +165,7 @@ def test_check_as_json_gives_sheet_and_values():
 
 
 def test_check_of_several_files_gives_an_array_and_the_worst_status(broken):
-    done = chainsim("check", DEMO, broken("teeth = 8", "teeth = 3"), "--json")
+    done = chainsim("check", LIFT, broken("teeth = 8", "teeth = 3"), "--json")
     assert done.exit_code == 2
     good, bad = json.loads(done.stdout)
     assert good["links"] == 112
@@ -177,16 +176,16 @@ def test_check_of_several_files_gives_an_array_and_the_worst_status(broken):
 
 
 def test_check_writes_a_drawing_and_replaces_none(tmp_path):
-    for name in ("head-driven.svg", "head-driven-2.svg"):
-        done = chainsim("check", DEMO, "--out", tmp_path, "--json")
+    for name in ("foyer.svg", "foyer-2.svg"):
+        done = chainsim("check", LIFT, "--out", tmp_path, "--json")
         assert json.loads(done.stdout)["drawing"] == str(tmp_path / name)
         assert (tmp_path / name).read_text(encoding="utf-8").startswith("<svg")
-    chainsim("check", DEMO, "--out", tmp_path, "--force")
+    chainsim("check", LIFT, "--out", tmp_path, "--force")
     assert len(list(tmp_path.iterdir())) == 2
 
 
 def test_values_can_be_changed_in_the_call():
-    done = chainsim("check", DEMO, "--set", "drive.chain_speed=0.18 m/s", "--json")
+    done = chainsim("check", LIFT, "--set", "drive.chain_speed=0.18 m/s", "--json")
     rows = {row["name"]: row["value"] for row in json.loads(done.stdout)["sizing"]}
     assert rows["pocket rate"] == pytest.approx(0.18 / 0.04)
 
@@ -197,10 +196,10 @@ def test_warnings_are_told_with_their_key_and_fail_only_when_strict(broken):
     assert done.exit_code == 0
     assert "warning: balls.mass: 900 kg is unusual" in done.stderr
     assert chainsim("check", heavy, "--strict").exit_code == 1
-    assert chainsim("check", DEMO, "--strict").exit_code == 0
+    assert chainsim("check", LIFT, "--strict").exit_code == 0
 
 
-# One fault each: what is replaced in the demo, by what, and what the message must say.
+# One fault each: what is replaced in the lift, by what, and what the message must say.
 FAULTS = {
     "unknown key": ("link_mass", "link_mas", "did you mean"),
     "no unit": ('pitch = "10 mm"', "pitch = 10", "unit"),
@@ -232,7 +231,7 @@ def test_every_fault_is_told_in_words(name, command, broken, tmp_path):
 
 
 def test_all_faults_are_told_at_once_with_file_and_line(broken):
-    text = DEMO.read_text(encoding="utf-8")
+    text = LIFT.read_text(encoding="utf-8")
     path = broken("link_mass", "link_mas")
     path.write_text(
         path.read_text(encoding="utf-8").replace('ramp = "0.5 s"', 'ramp = "0.5"'), encoding="utf-8"
@@ -271,7 +270,7 @@ def test_a_folder_is_no_file(tmp_path):
         assert "Traceback" not in done.output
 
 
-@pytest.mark.parametrize("arguments", [(), ("rnu",), ("check", "--no-such"), ("limit", DEMO)])
+@pytest.mark.parametrize("arguments", [(), ("rnu",), ("check", "--no-such"), ("limit", LIFT)])
 def test_a_wrong_call_has_status_2(arguments):
     assert chainsim(*arguments).exit_code == 2
 
@@ -279,7 +278,7 @@ def test_a_wrong_call_has_status_2(arguments):
 def test_a_folder_that_cannot_be_written_to_is_told_before_the_run(tmp_path):
     taken = tmp_path / "taken"
     taken.write_text("no folder", encoding="utf-8")
-    done = chainsim("run", DEMO, "--out", taken / "deep")
+    done = chainsim("run", LIFT, "--out", taken / "deep")
     assert done.exit_code == 2
     assert "cannot be written to" in done.stderr
 
@@ -297,7 +296,7 @@ def test_a_fault_of_chainsim_itself_is_said_to_be_one(monkeypatch):
         raise ZeroDivisionError("no reason")
 
     monkeypatch.setattr("chainsim.scenario.read_scenario", fail)
-    done = chainsim("check", DEMO)
+    done = chainsim("check", LIFT)
     assert done.exit_code == 3
     assert "fault of chainsim itself" in done.stderr
     assert "ZeroDivisionError: no reason" in done.stderr

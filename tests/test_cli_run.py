@@ -20,7 +20,7 @@ from chainsim.recording import open_recording
 from chainsim.scenario import read_scenario
 
 SCENARIOS = Path(__file__).parents[1] / "scenarios"
-DEMO = SCENARIOS / "head-driven.toml"
+LIFT = Path(__file__).parent / "data" / "foyer.toml"
 SHORT = ("--set", "run.duration=3 s", "--set", "run.settle=1 s")
 ENDLESS = ("--set", "run.duration=20000 s", "--set", "run.sample_rate=50 Hz")
 
@@ -31,9 +31,9 @@ def chainsim(*arguments):
 
 @pytest.fixture(scope="module")
 def short(tmp_path_factory):
-    """A short run of the demo: folder, and what the command printed as JSON."""
+    """A short run of a lift: folder, and what the command printed as JSON."""
     folder = tmp_path_factory.mktemp("short")
-    done = chainsim("run", DEMO, *SHORT, "--out", folder, "--json")
+    done = chainsim("run", LIFT, *SHORT, "--out", folder, "--json")
     assert done.exit_code in (0, 1), done.output
     return folder, done
 
@@ -41,8 +41,8 @@ def short(tmp_path_factory):
 def test_one_object_holds_everything(short):
     folder, done = short
     data = json.loads(done.stdout)
-    assert data["recording"] == str(folder / "head-driven.lift.h5")
-    assert data["report"] == str(folder / "head-driven.html")
+    assert data["recording"] == str(folder / "foyer.lift.h5")
+    assert data["report"] == str(folder / "foyer.html")
     assert data["complete"] is True
     assert set(data["situations"]) == {"run", "not_run"}
     assert [f["name"] for f in data["findings"]] == [row.judge.__name__ for row in ROWS]
@@ -60,12 +60,12 @@ def test_status_follows_from_the_findings(short):
 
 def test_recording_and_page_are_there(short):
     folder, _ = short
-    with h5py.File(folder / "head-driven.lift.h5") as file:
+    with h5py.File(folder / "foyer.lift.h5") as file:
         assert file.attrs["complete"]
         assert file["pins/position"].attrs["units"] == "m"
         text = file["scenario/text"][()].decode()
     assert "# changed: run.duration=3 s" in text
-    assert "<title>" in (folder / "head-driven.html").read_text(encoding="utf-8")
+    assert "<title>" in (folder / "foyer.html").read_text(encoding="utf-8")
     assert not list(folder.glob("*.partial"))
 
 
@@ -81,34 +81,34 @@ def test_from_python_the_same_findings(short):
 
     _, done = short
     changes = SHORT[1::2]
-    rec = cs.run(cs.read_scenario(DEMO, changes))
+    rec = cs.run(cs.read_scenario(LIFT, changes))
     told = {f["name"]: (f["outcome"], f["value"]) for f in json.loads(done.stdout)["findings"]}
     assert {f.name: (f.outcome, f.value) for f in rec.findings} == told
 
 
 def test_names_that_are_taken_are_kept(short, tmp_path):
-    for name in ("head-driven", "head-driven-2"):
-        done = chainsim("run", DEMO, *SHORT, "--out", tmp_path, "--json", "--no-report")
+    for name in ("foyer", "foyer-2"):
+        done = chainsim("run", LIFT, *SHORT, "--out", tmp_path, "--json", "--no-report")
         data = json.loads(done.stdout)
         assert data["recording"] == str(tmp_path / f"{name}.lift.h5")
         assert data["report"] is None
-    before = (tmp_path / "head-driven.lift.h5").stat().st_ino
-    done = chainsim("run", DEMO, *SHORT, "--out", tmp_path, "--force", "--quiet", "--no-report")
-    assert (tmp_path / "head-driven.lift.h5").stat().st_ino != before
+    before = (tmp_path / "foyer.lift.h5").stat().st_ino
+    done = chainsim("run", LIFT, *SHORT, "--out", tmp_path, "--force", "--quiet", "--no-report")
+    assert (tmp_path / "foyer.lift.h5").stat().st_ino != before
     assert len(list(tmp_path.iterdir())) == 2
     assert done.stderr == ""
 
 
 def test_a_stranger_reads_verdict_findings_and_places_within_80_columns(tmp_path, monkeypatch):
     monkeypatch.chdir(tmp_path)
-    done = chainsim("run", DEMO, *SHORT)
+    done = chainsim("run", LIFT, *SHORT)
     lines = done.stdout.splitlines()
     assert max(map(len, lines)) <= 80
     order = ["Foyer wall", "finding ", "Balls", "Chain", "Space", "Drive", "Situations run",
              "Not run", "Recording", "Report"]  # fmt: skip
     starts = [next(i for i, line in enumerate(lines) if line.startswith(word)) for word in order]
     assert starts == sorted(starts)
-    assert "Recording  out/head-driven.lift.h5" in done.stdout
+    assert "Recording  out/foyer.lift.h5" in done.stdout
 
 
 def test_a_failing_finding_has_status_1(tmp_path):
@@ -120,16 +120,16 @@ def test_a_failing_finding_has_status_1(tmp_path):
 
 def test_missing_data_fails_only_when_strict(tmp_path):
     brief = ("--set", "run.duration=1 s", "--no-report", "--json", "--out", tmp_path)
-    done = chainsim("run", DEMO, *brief)
+    done = chainsim("run", LIFT, *brief)
     whys = {f.get("why") for f in json.loads(done.stdout)["findings"]}
     assert "not enough data" in whys
     assert done.exit_code == 0
-    assert chainsim("run", DEMO, *brief, "--strict").exit_code == 1
+    assert chainsim("run", LIFT, *brief, "--strict").exit_code == 1
 
 
 def test_a_fault_of_one_file_does_not_keep_the_others_from_running(tmp_path, write_scenario):
     bad = write_scenario("format = 1\n", "bad.toml")
-    done = chainsim("run", bad, DEMO, *SHORT, "--out", tmp_path, "--no-report", "--json")
+    done = chainsim("run", bad, LIFT, *SHORT, "--out", tmp_path, "--no-report", "--json")
     assert done.exit_code == 2
     first, second = json.loads(done.stdout)
     assert first["file"] == str(bad)
@@ -140,14 +140,14 @@ def test_a_fault_of_one_file_does_not_keep_the_others_from_running(tmp_path, wri
 def test_report_writes_page_plots_and_exports(short, tmp_path):
     folder, ran = short
     done = chainsim(
-        "report", folder / "head-driven.lift.h5", "--out", tmp_path, "--plots", tmp_path / "plots",
+        "report", folder / "foyer.lift.h5", "--out", tmp_path, "--plots", tmp_path / "plots",
         "--csv", tmp_path / "csv", "--mat", tmp_path, "--json",
     )  # fmt: skip
     data = json.loads(done.stdout)
     assert data["findings"] == json.loads(ran.stdout)["findings"]
     assert done.exit_code == ran.exit_code
-    assert Path(data["report"]) == tmp_path / "head-driven.html"
-    assert Path(data["mat"]) == tmp_path / "head-driven.mat"
+    assert Path(data["report"]) == tmp_path / "foyer.html"
+    assert Path(data["mat"]) == tmp_path / "foyer.mat"
     assert (tmp_path / "plots" / "strand-tension.svg").exists()
     heading = (tmp_path / "csv" / "links_tension.csv").read_text(encoding="utf-8").split("\r\n")[0]
     assert heading.startswith("time [s],tension link 0 [N]")
@@ -156,26 +156,26 @@ def test_report_writes_page_plots_and_exports(short, tmp_path):
 def test_compare_names_what_differs(short, tmp_path):
     folder, _ = short
     heavier = ("--set", "sprocket.tail.mount.mass=0.4 kg")
-    done = chainsim("run", DEMO, *SHORT, *heavier, "--out", tmp_path, "--no-report", "--json")
+    done = chainsim("run", LIFT, *SHORT, *heavier, "--out", tmp_path, "--no-report", "--json")
     other = json.loads(done.stdout)["recording"]
-    done = chainsim("compare", folder / "head-driven.lift.h5", other, "--out", tmp_path, "--json")
+    done = chainsim("compare", folder / "foyer.lift.h5", other, "--out", tmp_path, "--json")
     assert done.exit_code == 0
     data = json.loads(done.stdout)
     assert [d["key"] for d in data["inputs"]] == ["sprocket.tail.mount.mass"]
     assert Path(data["report"]).exists()
-    text = chainsim("compare", folder / "head-driven.lift.h5", other, "--out", tmp_path).stdout
+    text = chainsim("compare", folder / "foyer.lift.h5", other, "--out", tmp_path).stdout
     assert "300 g" in text
     assert "400 g" in text
 
 
 def test_build_writes_sheet_and_outlines(short, tmp_path):
     folder, ran = short
-    done = chainsim("build", folder / "head-driven.lift.h5", "--out", tmp_path, "--json")
+    done = chainsim("build", folder / "foyer.lift.h5", "--out", tmp_path, "--json")
     assert done.exit_code == ran.exit_code
     data = json.loads(done.stdout)
     assert all(Path(path).exists() for path in data["files"].values())
     assert {"outline head, SVG", "outline tail, SVG"} <= set(data["files"])
-    done = chainsim("build", DEMO, "--out", tmp_path)
+    done = chainsim("build", LIFT, "--out", tmp_path)
     assert done.exit_code == 0
     assert "NOT SIMULATED" in done.stdout
 
@@ -199,7 +199,7 @@ def wait_for_recording(folder: Path, process) -> None:
 
 
 def test_ctrl_c_keeps_what_there_is(tmp_path):
-    process = spawn("run", DEMO, *ENDLESS, "--out", tmp_path, "--json", cwd=tmp_path)
+    process = spawn("run", LIFT, *ENDLESS, "--out", tmp_path, "--json", cwd=tmp_path)
     wait_for_recording(tmp_path, process)
     process.send_signal(signal.SIGINT)
     output, errors = process.communicate(timeout=120)
@@ -213,7 +213,7 @@ def test_ctrl_c_keeps_what_there_is(tmp_path):
 
 
 def test_after_a_kill_the_recording_can_be_reported(tmp_path):
-    process = spawn("run", DEMO, *ENDLESS, "--out", tmp_path, cwd=tmp_path)
+    process = spawn("run", LIFT, *ENDLESS, "--out", tmp_path, cwd=tmp_path)
     wait_for_recording(tmp_path, process)
     process.kill()
     process.communicate()
@@ -229,7 +229,7 @@ def test_a_full_disk_is_told_in_words(tmp_path):
         resource.setrlimit(resource.RLIMIT_FSIZE, (60_000, 60_000))
 
     process = spawn(
-        "run", DEMO, *ENDLESS, "--out", tmp_path, cwd=tmp_path, preexec_fn=hold_files_small
+        "run", LIFT, *ENDLESS, "--out", tmp_path, cwd=tmp_path, preexec_fn=hold_files_small
     )
     _, errors = process.communicate(timeout=300)
     assert process.returncode == 3, errors
@@ -240,7 +240,7 @@ def test_a_full_disk_is_told_in_words(tmp_path):
 @pytest.mark.skipif(os.geteuid() == 0, reason="root may write anywhere")
 def test_a_folder_without_permission_is_told(tmp_path):
     tmp_path.chmod(0o500)
-    done = chainsim("run", DEMO, "--out", tmp_path / "out")
+    done = chainsim("run", LIFT, "--out", tmp_path / "out")
     tmp_path.chmod(0o700)
     assert done.exit_code == 2
     assert "cannot be written to" in done.stderr
@@ -248,26 +248,26 @@ def test_a_folder_without_permission_is_told(tmp_path):
 
 def test_first_compilation_is_announced_once(tmp_path, monkeypatch):
     monkeypatch.setattr("chainsim.cli.progress.will_compile", lambda: True)
-    done = chainsim("run", DEMO, *SHORT, "--out", tmp_path, "--no-report")
+    done = chainsim("run", LIFT, *SHORT, "--out", tmp_path, "--no-report")
     assert done.stderr.count("compiling the kernels") == 1
     monkeypatch.setattr("chainsim.cli.progress.will_compile", lambda: False)
-    done = chainsim("run", DEMO, *SHORT, "--out", tmp_path, "--no-report")
+    done = chainsim("run", LIFT, *SHORT, "--out", tmp_path, "--no-report")
     assert "compiling" not in done.stderr
 
 
 def test_step_is_verified_on_request(tmp_path):
     brief = ("--set", "run.duration=1 s", "--no-report", "--quiet", "--json", "--out", tmp_path)
-    data = json.loads(chainsim("run", DEMO, *brief, "--verify-step").stdout)
+    data = json.loads(chainsim("run", LIFT, *brief, "--verify-step").stdout)
     assert [drift["name"] for drift in data["verify_step"]] == [row.judge.__name__ for row in ROWS]
     assert all(len(drift["outcomes"]) == 3 for drift in data["verify_step"])
 
 
 def test_situations_are_run_on_request(tmp_path):
     brief = ("--set", "run.duration=1 s", "--no-report", "--quiet", "--json", "--out", tmp_path)
-    done = chainsim("run", DEMO, *brief, "--situations", "stop, take-up blocked")
+    done = chainsim("run", LIFT, *brief, "--situations", "stop, take-up blocked")
     data = json.loads(done.stdout)
     assert data["proving"]["situations"]["run"] == ["stop", "take-up blocked"]
-    done = chainsim("run", DEMO, *brief, "--situations", "stoop")
+    done = chainsim("run", LIFT, *brief, "--situations", "stoop")
     assert done.exit_code == 2
     assert "stoop" in done.stderr
 
@@ -279,11 +279,11 @@ def test_unsure_values_are_repeated_on_request(tmp_path, monkeypatch):
     found = [Unsure("chain.link_damping", "kind", 0.02, 0.1, 0.2, (turn,), (), 0.5, "rate_met")]
     monkeypatch.setattr("chainsim.study.unsure.unsure", lambda scenario, bench: found)
     brief = ("--set", "run.duration=1 s", "--no-report", "--out", tmp_path, "--unsure")
-    data = json.loads(chainsim("run", DEMO, *brief, "--json").stdout)
+    data = json.loads(chainsim("run", LIFT, *brief, "--json").stdout)
     assert data["unsure"][0]["turns_at_low"] == [
         {"finding": "rate_met", "before": "holds", "after": "fails"}
     ]
-    assert "Measure first: chain.link_damping" in chainsim("run", DEMO, *brief).stdout
+    assert "Measure first: chain.link_damping" in chainsim("run", LIFT, *brief).stdout
 
 
 class Terminal:
@@ -343,7 +343,7 @@ kind = "serial"
 
 def test_a_sweep_is_run_ranked_and_not_done_twice(tmp_path):
     plan = tmp_path / "plan.toml"
-    plan.write_text(SMALL_PLAN.format(scenario=DEMO), encoding="utf-8")
+    plan.write_text(SMALL_PLAN.format(scenario=LIFT), encoding="utf-8")
     first = json.loads(chainsim("sweep", plan, "--csv", tmp_path / "t.csv", "--json").stdout)
     assert (first["computed"], first["reused"], first["failed"]) == (2, 0, 0)
     assert Path(first["report"]).exists()
@@ -365,7 +365,7 @@ def test_a_sweep_is_run_ranked_and_not_done_twice(tmp_path):
     ],
 )
 def test_limit_refuses_what_it_cannot_answer(arguments, words):
-    done = chainsim("limit", DEMO, *arguments)
+    done = chainsim("limit", LIFT, *arguments)
     assert done.exit_code == 2
     assert words in done.stderr
     assert "Traceback" not in done.output
@@ -373,6 +373,6 @@ def test_limit_refuses_what_it_cannot_answer(arguments, words):
 
 def test_scenario_is_read_as_the_file_has_it(short):
     folder, _ = short
-    with open_recording(folder / "head-driven.lift.h5") as rec:
-        asked = read_scenario(DEMO, SHORT[1::2])
+    with open_recording(folder / "foyer.lift.h5") as rec:
+        asked = read_scenario(LIFT, SHORT[1::2])
         assert rec.scenario.sha256 == asked.sha256

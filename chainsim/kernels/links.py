@@ -241,7 +241,7 @@ def rub_joints(chain, deflection, rate, work, dt):
 
 @kernel
 def _rub_joint(chain, i, before, old, work, dt):
-    """Return couple [N m], new deflection [rad] and loss [J] of joint i, link `before` to link i."""
+    """Return couple [N m], deflection [rad] and loss [J] of joint i, link `before` to link i."""
     k = chain.joint_stiffness
     slip = work.turn[i] - work.turn[before]
     limit = chain.joint_moment + chain.joint_radius * 0.5 * abs(

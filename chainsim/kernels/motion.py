@@ -390,7 +390,7 @@ def kick_and_drift(state, rate, n, balls, dt):
 def derivative(t, parts, state, rate, work):
     """Write the time derivative of a state, for general methods.
 
-    Pins near wheels and guides are listed at every call; what balls may touch is listed by `relist`.
+    Pins near wheels and guides are listed at every call, what balls may touch by `relist`.
 
     Parameters
     ----------

@@ -118,7 +118,7 @@ _ALL = (
     Parameter("chain.link_stiffness", "stiffness", "stiffness of a link",
               False, 1.0, 1e10, _unit_size),
     Parameter("chain.link_damping", "fraction", "damping of a link",
-              False, 1e-4, 5.0, _unit_size),
+              False, 1e-4, 2.0, _unit_size),
     Parameter("chain.joint.moment", "torque", "joint friction without tension",
               True, 0.0, 10.0, _joint_size),
     Parameter("chain.joint.friction", "fraction", "coefficient of joint friction",

@@ -13,6 +13,7 @@ import numpy as np
 from scipy.optimize import least_squares
 from scipy.stats import norm, t
 
+from chainsim.errors import RunError
 from chainsim.study.fit_benches import Bench
 from chainsim.study.fit_parameters import Parameter
 
@@ -141,8 +142,12 @@ class _Model:
         self._kept: tuple[bytes, np.ndarray] = (b"", np.zeros(0))
 
     def one(self, x: np.ndarray, bench: int) -> np.ndarray:
+        """Readings of one bench; not a number where these values can't be simulated."""
         values = self.variables.values(x)
-        return self.benches[bench].predicted(values, self.variables.own(x, bench))
+        try:
+            return self.benches[bench].predicted(values, self.variables.own(x, bench))
+        except RunError:
+            return np.full(len(self.benches[bench].observed), np.nan)
 
     def all(self, x: np.ndarray) -> np.ndarray:
         if self._kept[0] != x.tobytes():
@@ -159,7 +164,9 @@ class _Model:
             for i in self.variables.feels(bench):
                 moved = x.copy()
                 moved[i] += STEP if x[i] + STEP <= high[i] else -STEP
-                slopes[rows, i] = (self.one(moved, bench) - base[rows]) / (moved[i] - x[i])
+                change = (self.one(moved, bench) - base[rows]) / (moved[i] - x[i])
+                # a step to where nothing can be simulated says nothing
+                slopes[rows, i] = np.nan_to_num(change, posinf=0.0, neginf=0.0)
         return slopes
 
 
@@ -176,6 +183,11 @@ def solve(problem: Problem, confidence: float) -> Solution:
     -------
     Solution
 
+    Raises
+    ------
+    RunError
+        If a bench cannot be simulated with the values to start from.
+
     References
     ----------
     Huber's proposal 2 for values and scatter, and the covariance of an M-estimate: P. J. Huber,
@@ -186,6 +198,8 @@ def solve(problem: Problem, confidence: float) -> Solution:
     model = _Model(variables)
     bounds = variables.bounds()
     x = np.clip(variables.start(), *bounds)
+    if not np.isfinite(model.all(x)).all():
+        raise RunError("the bench cannot be simulated with the scenario's own values")
     scatter = FIRST_SCATTER * _per_group(model, lambda rows: np.abs(model.observed[rows]).max())
     if not model.early.all():
         x = _fitted(model, x, bounds, scatter, model.early)

@@ -21,6 +21,10 @@ SET_DOWN = 1e-2
 """The same for a strand whose joints hold it in place with a weight on its arm [dimensionless]."""
 
 
+CALM = 0.1
+"""Damping of a link, share of critical, where only rest is asked for [dimensionless]."""
+
+
 class Piece(NamedTuple):
     """A straight piece of chain that hangs from its first pin.
 
@@ -185,7 +189,7 @@ def growth(piece: Piece, values: Mapping[str, float], loads: np.ndarray) -> np.n
 
 def _end_at_rest(piece: Piece, values: Mapping[str, float], load: float) -> float:
     """Height of the lower end at rest [m]."""
-    packed = hang(piece, values, load)
+    packed = hang(piece, {**values, "chain.link_damping": CALM}, load)
     still = STILL * piece.link_mass * piece.gravity
     rest_strand(packed, strand_step(packed), still)
     return float(packed.state.y[piece.n_links])

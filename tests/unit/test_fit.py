@@ -1,11 +1,15 @@
 """A fit recovers what made synthetic bench data, as often as it says, and claims no more."""
 
+from pathlib import Path
+
 import numpy as np
 import pytest
 
 from chainsim.errors import CallError, ScenarioError
+from chainsim.scenario import parse_scenario, read_scenario
 from chainsim.study.fit import fit, fit_measurements
-from chainsim.study.fit_reading import parse_measurement
+from chainsim.study.fit_forms import FORMS
+from chainsim.study.fit_reading import parse_measurement, read_measurements
 from tests.unit.fit_bench import (
     MOTOR,
     SCENARIO,
@@ -167,3 +171,14 @@ def test_calls_that_cannot_work_are_refused(tmp_path):
         fit(scenario(), ["a.csv"], hold=["chain.pitch"])
     with pytest.raises(ScenarioError, match=r"missing.csv: cannot be read"):
         fit(scenario(), [tmp_path / "missing.csv"])
+
+
+def test_the_examples_are_read_and_tell_their_motor():
+    folder = Path(__file__).parents[2] / "scenarios"
+    measurements = read_measurements(sorted((folder / "bench").glob("*.csv")))
+    assert {measurement.kind for measurement in measurements} == set(FORMS)
+    result = fit(read_scenario(folder / "motor-jam.toml"), [folder / "bench" / "motor.csv"])
+    # made with 18.6 mN m, beside the 20 mN m that the scenario states
+    assert covers(result.claimed["drive.motor.stall_torque"], 18.6e-3)
+    read = parse_scenario(result.scenario_text())
+    assert read.origin("drive.motor.stall_torque").source == "bench"

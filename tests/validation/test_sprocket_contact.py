@@ -120,7 +120,9 @@ def test_tension_along_the_teeth(claim, half_wrap):
         claim(
             f"tension after {k} teeth over that before, 16 teeth, flank 20 deg",
             "T_k = T_0 (sin f / sin(f + 2 b))^k, Naji & Marshek (1983)", ratio**k,
-            tension[k] / tension[0], 0.05, "", "links stretch; pins differ a little in height",
+            tension[k] / tension[0], 0.05, "", "the law has every pin at the middle of its seat",
+            cause="pins of the worn chain lie on their flanks 0.34 deg ahead of their seats, "
+            "which comes off the flank's 20 deg: 1 % a tooth",
         )  # fmt: skip
 
 
@@ -238,9 +240,9 @@ def test_strand_that_runs_along_itself(claim):
     packed.state.vy[:links][on] += 0.004 * np.sin(np.pi * packed.state.x[:links][on] / span)
     packed.state.vy[links] = packed.state.vy[0]
     clear(packed)
-    dt, seconds = strand_step(packed), 3.0
-    t, seen = follow(packed, seconds, 1500, look, dt=dt)
-    steps = 1500 * round(seconds / 1500 / dt)
+    dt, seconds = strand_step(packed), 6.0
+    t, seen = follow(packed, seconds, 3000, look, dt=dt)
+    steps = 3000 * round(seconds / 3000 / dt)
     tension = packed.work.links.tension_sum[:links].mean() / steps
     hub, flow = -packed.work.wheel_sums[0, 0] / steps, seen[:, 1].mean()
     wave = np.sqrt(tension / per_length)

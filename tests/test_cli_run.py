@@ -267,6 +267,8 @@ def test_situations_are_run_on_request(tmp_path):
     done = chainsim("run", LIFT, *brief, "--situations", "stop, take-up blocked")
     data = json.loads(done.stdout)
     assert data["proving"]["situations"]["run"] == ["stop", "take-up blocked"]
+    assert {"stop", "take-up blocked"} <= set(data["situations"]["run"])
+    assert not {"stop", "take-up blocked"} & set(data["situations"]["not_run"])
     done = chainsim("run", LIFT, *brief, "--situations", "stoop")
     assert done.exit_code == 2
     assert "stoop" in done.stderr

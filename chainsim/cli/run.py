@@ -167,10 +167,11 @@ def _studies(scenario: Any, data: dict[str, Any], as_json: bool, options: dict[s
     from chainsim.cli import repeats
 
     status = HOLDS
-    chosen = (
+    named = ",".join(scenario.run.situations or ())
+    chosen: tuple[tuple[str, Any, Any], ...] = (
         ("verify_step", options["verify_step"], repeats.step_check),
         ("unsure", options["unsure"], repeats.unsure_values),
-        ("proving", options["situations"], repeats.proving_run),
+        ("proving", options["situations"] or named, repeats.proving_run),
     )
     for name, asked, study in chosen:
         if not asked:
@@ -184,4 +185,14 @@ def _studies(scenario: Any, data: dict[str, Any], as_json: bool, options: dict[s
         status = max(status, found.status)
         if not as_json:
             show("", found.table)
+    if "proving" in data:
+        data["situations"] = _together(data["situations"], data["proving"]["situations"])
+        if not as_json:
+            show(f"Not run at all: {', '.join(data['situations']['not_run']) or 'none'}")
     return status
+
+
+def _together(first: dict[str, Any], proven: dict[str, Any]) -> dict[str, list[str]]:
+    """Situations that were run in the recorded run or in a run of their own, and the rest."""
+    run = [*first["run"], *(name for name in proven["run"] if name not in first["run"])]
+    return {"run": run, "not_run": [name for name in first["not_run"] if name not in run]}

@@ -142,33 +142,17 @@ def bench_strand(
     held = diagonal.copy()
     held[list(fixed)] = IMMOVABLE
     masses = factored(held, coupling, moment, hung.link)
-    size = padded(n + 1)
-    rows = [aligned(size) for _ in range(4)]
-    for row, values in zip(rows, (pitch, 1.0 / mass, moment.real, moment.imag), strict=True):
-        row[:n] = values
-    chain = Chain(
-        n=n,
-        pitch=rows[0],
-        stiffness=float(link_stiffness),
-        damping=link_damping * math.sqrt(link_stiffness * link_mass),
-        play=float(play),
-        inverse_mass=rows[1],
-        weight_re=rows[2],
-        weight_im=rows[3],
-        mass=np.ascontiguousarray(diagonal),
-        coupling_re=np.ascontiguousarray(coupling.real),
-        coupling_im=np.ascontiguousarray(coupling.imag),
-        gx=float(gravity[0]),
-        gy=float(gravity[1]),
-        gravity=math.hypot(*gravity),
-        joint_moment=float(joint_moment),
-        joint_radius=float(joint_radius),
-        joint_stiffness=float(joint_stiffness),
-        front_bend=0.0,
-        back_bend=0.0,
-        bend_stiffness=0.0,
-        air=float(air_damping),
-        open=int(not closed),
+    chain = _bench_chain(
+        pitch,
+        mass,
+        (diagonal, coupling, moment),
+        link_stiffness=link_stiffness,
+        link_damping=link_damping * math.sqrt(link_stiffness * link_mass),
+        play=play,
+        joint=(joint_moment, joint_radius, joint_stiffness),
+        air_damping=air_damping,
+        gravity=gravity,
+        closed=closed,
     )
     wheels = _far_wheel() if wheels is None else wheels
     mounts = _fixed_mounts(len(wheels)) if mounts is None else mounts
@@ -194,6 +178,42 @@ def bench_strand(
     close_loop.py_func(state, n)
     work = new_work(n, len(wheels), 0, 0, len(hung.link))
     return Packed(parts, work, flat, rate_flat, ends, state, rate)
+
+
+def _bench_chain(
+    pitch, mass, terms, *, link_stiffness, link_damping, play, joint, air_damping, gravity, closed
+) -> Chain:
+    """Pack the chain; `terms` are those of `mass_matrix_terms`, `link_damping` is in N s/m."""
+    n = len(mass)
+    diagonal, coupling, moment = terms
+    size = padded(n + 1)
+    rows = [aligned(size) for _ in range(4)]
+    for row, values in zip(rows, (pitch, 1.0 / mass, moment.real, moment.imag), strict=True):
+        row[:n] = values
+    return Chain(
+        n=n,
+        pitch=rows[0],
+        stiffness=float(link_stiffness),
+        damping=float(link_damping),
+        play=float(play),
+        inverse_mass=rows[1],
+        weight_re=rows[2],
+        weight_im=rows[3],
+        mass=np.ascontiguousarray(diagonal),
+        coupling_re=np.ascontiguousarray(coupling.real),
+        coupling_im=np.ascontiguousarray(coupling.imag),
+        gx=float(gravity[0]),
+        gy=float(gravity[1]),
+        gravity=math.hypot(*gravity),
+        joint_moment=float(joint[0]),
+        joint_radius=float(joint[1]),
+        joint_stiffness=float(joint[2]),
+        front_bend=0.0,
+        back_bend=0.0,
+        bend_stiffness=0.0,
+        air=float(air_damping),
+        open=int(not closed),
+    )
 
 
 def _pin_masses(n: int, link_mass: float, closed: bool, end_mass: float) -> np.ndarray:

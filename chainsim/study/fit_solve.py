@@ -33,6 +33,10 @@ STEADY = 0.05
 FIRST_SCATTER = 0.03
 """Scatter to start from, as a share of the largest reading [dimensionless]."""
 
+ALIKE = 1e-6
+"""Difference between simulated readings, as a share, below which one reading was taken again and
+again [dimensionless]."""
+
 FAINT = 1e-8
 """Information that keeps the matrix regular where readings say nothing [dimensionless]."""
 
@@ -283,9 +287,16 @@ def _judged(
     degrees = total**2 / np.maximum((variances**2 / freedom[:, None]).sum(axis=0), 1e-300)
     quantile = t.ppf(0.5 + 0.5 * confidence, np.clip(degrees, 0.5, None))
     half = quantile * np.sqrt(np.diagonal(spread))
-    spreads = _per_group(model, lambda rows: max(float(np.var(model.observed[rows])), 1e-300))
+    made = model.all(x)
+    spreads = _per_group(model, lambda rows: _size(model.observed[rows], made[rows]))
     trend = _per_group(model, lambda rows: _trend(deviation[rows]))
     return Solution(x, spread, half, scatter, scatter**2 / spreads, trend)
+
+
+def _size(observed: np.ndarray, made: np.ndarray) -> float:
+    """Mean square of what a model has to follow: about the mean, unless nothing was varied."""
+    repeated = np.ptp(made) < ALIKE * np.abs(made).max()
+    return max(float((observed**2).mean() if repeated else np.var(observed)), 1e-300)
 
 
 def _trend(deviation: np.ndarray) -> float:

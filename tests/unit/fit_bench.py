@@ -93,8 +93,8 @@ def pluck_text(rng, load, values=TRUE, noise=0.1e-3) -> str:
     return table("decay", stated, "time [s], displacement [mm]", time, moved * 1e3)
 
 
-def tilt_text(rng, values=TRUE, noise=1.7e-3) -> str:
-    loads = np.array([0.5, 1.0, 2.0, 3.0, 4.0])
+def tilt_text(rng, values=TRUE, noise=1.7e-3, loads=(0.5, 1.0, 2.0, 3.0, 4.0)) -> str:
+    loads = np.array(loads)
     tilt = tilts(piece_of(scenario(), 0.15), values, loads, 0.2, 0.012)
     tilt = np.degrees(tilt + rng.normal(0.0, noise, len(loads)))
     stated = {"length": "150 mm", "weight": "0.2 N", "arm": "12 mm"}

@@ -162,7 +162,7 @@ def column(samples, name):
 
 
 def residual(samples, first=None):
-    """Energy that is unaccounted for [J], and the sum of all absolute flows [J], at every sample."""
+    """Energy that is unaccounted for at every sample, and the sum of all absolute flows [J]."""
     energy = samples.energy
     there = energy[:, KINETIC] + energy[:, POTENTIAL] + energy[:, STORED]
     came, gone = energy[:, :3].sum(axis=1), energy[:, 3 : len(LEDGER)].sum(axis=1)

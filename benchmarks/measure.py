@@ -209,11 +209,11 @@ def main() -> None:
     """Measure section by section; the page is written anew after each."""
     parts = [
         "# Benchmarks\n\n`python -m benchmarks.measure` writes this page from `speed-case.toml`; "
-        "[a million runs](million_runs.py) has a command of its own. Values are medians with the "
+        "[million_runs.py](million_runs.py) has a command of its own. Values are medians with the "
         "smallest and largest of their repeats. The machine is shared: ratios and processor "
         "times mean more than wall times."
     ]
-    for section in (speed, effects, recording, precision, memory):
+    for section in (effects, recording, speed, memory, precision):
         parts.append(section())
         print(parts[-1], flush=True)
         (HERE / "README.md").write_text("\n\n".join(parts) + "\n", encoding="utf-8")

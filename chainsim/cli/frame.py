@@ -131,7 +131,7 @@ def explained(error: BaseException) -> Told:
     if isinstance(error, OSError) and error.errno == errno.EPIPE:
         raise error
     if isinstance(error, ChainsimError | OSError) and _is_full(error):
-        return Told(RUN_COULD_NOT_BE_COMPLETED, f"the disk is full: {_words(error)}", [])
+        return Told(RUN_COULD_NOT_BE_COMPLETED, f"the disk is full: {_shortly(error)}", [])
     if isinstance(error, ScenarioError):
         return Told(error.exit_status, str(error), [vars(p) for p in error.problems])
     if isinstance(error, ChainsimError):
@@ -161,6 +161,11 @@ def _is_full(error: BaseException | None) -> bool:
     is_full = getattr(error, "errno", None) in NO_SPACE
     told = any(os.strerror(number) in str(error) for number in NO_SPACE)
     return is_full or told or _is_full(error.__cause__)
+
+
+def _shortly(error: BaseException) -> str:
+    """An error in words, without the file handles and addresses that HDF5 adds."""
+    return _words(error).partition(" (file write failed")[0]
 
 
 def _words(error: BaseException) -> str:

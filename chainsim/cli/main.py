@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 import sys
 
 import click
@@ -11,12 +12,14 @@ from chainsim.cli.build import build
 from chainsim.cli.check import check
 from chainsim.cli.compare import compare
 from chainsim.cli.fit import fit
+from chainsim.cli.frame import TRACEBACK
 from chainsim.cli.limit import limit
 from chainsim.cli.new import new
 from chainsim.cli.ready import ready
 from chainsim.cli.report import report
 from chainsim.cli.run import run
 from chainsim.cli.sweep import sweep
+from chainsim.errors import RUN_COULD_NOT_BE_COMPLETED
 
 
 class _InOrder(click.Group):
@@ -50,4 +53,28 @@ def main() -> None:
     for stream in (sys.stdout, sys.stderr):
         if hasattr(stream, "reconfigure"):
             stream.reconfigure(errors="replace")
-    commands(prog_name="chainsim")
+    if TRACEBACK not in os.environ:
+        sys.excepthook = sys.unraisablehook = _say_nothing
+    try:
+        commands(prog_name="chainsim")
+    except SystemExit as leaving:
+        if leaving.code == RUN_COULD_NOT_BE_COMPLETED:
+            _leave_at_once(leaving.code)
+        raise
+
+
+def _say_nothing(*_: object) -> None:
+    """Keep quiet about faults inside destructors; all others have been told in words."""
+
+
+def _leave_at_once(status: int) -> None:
+    """Leave without tearing down: HDF5 crashes when it closes a file that it cannot write to.
+
+    Parameters
+    ----------
+    status : int
+        Exit status (dimensionless).
+    """
+    sys.stdout.flush()
+    sys.stderr.flush()
+    os._exit(status)

@@ -331,3 +331,30 @@ def test_ready_fails_where_a_package_is_missing(monkeypatch):
 )  # fmt: skip
 def test_units_of_json_are_written_as_in_recordings(kind, unit):
     assert recording_unit(kind) == unit
+
+
+STRETCH = "# kind = stretch\n# length = 1 m\nload [N],growth [mm]\n1,2.0\n2,4.1\n3,5.9\n4,8.1\n"
+
+
+def test_fit_writes_a_scenario_that_says_where_its_value_came_from(tmp_path):
+    table = tmp_path / "stretch.csv"
+    table.write_text(STRETCH, encoding="utf-8")
+    done = chainsim("fit", LIFT, table, "--out", tmp_path, "--json")
+    assert done.exit_code == 0, done.output
+    data = json.loads(done.stdout)
+    (stiffness,) = data["parameters"]
+    # Hooke: 100 links of 10 mm grow by 2 mm for each newton, so one link takes 50 kN/m.
+    assert stiffness["low"] < 50e3 < stiffness["high"]
+    assert stiffness["unit"] == "N m-1"
+    fitted = Path(data["scenario"])
+    assert fitted == tmp_path / "foyer-fitted.toml"
+    assert json.loads(chainsim("check", fitted, "--json", "--full").stdout)["links"] == 112
+
+
+def test_fit_refuses_a_column_without_its_unit(tmp_path):
+    table = tmp_path / "stretch.csv"
+    table.write_text(STRETCH.replace("growth [mm]", "growth"), encoding="utf-8")
+    done = chainsim("fit", LIFT, table, "--out", tmp_path)
+    assert done.exit_code == 2
+    assert "stretch.csv:3" in done.stderr
+    assert "Traceback" not in done.output

@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from chainsim.integration.loading import change_load
+from chainsim.integration.room import has_room
 from chainsim.integration.samples import BallRow, Event
 from chainsim.integration.start import Prepared, place_ball
 from chainsim.kernels.balls import EMPTY, FREE, SEATED
@@ -168,7 +169,7 @@ class Feeder:
         ]
 
     def set_down(self, t: float, carrier: int) -> None:
-        """Set the waiting ball down in a pocket that passes.
+        """Set the waiting ball down in a pocket that passes; it waits on where no room is.
 
         Parameters
         ----------
@@ -177,6 +178,8 @@ class Feeder:
         carrier : int
             (dimensionless)
         """
+        if self._rolling and not has_room(self.prepared, carrier, self.aboard):
+            return
         if self._kind == "set down":
             self.waiting -= 1
             self.waits.append(t - self._waiting_since.pop(0))

@@ -230,7 +230,7 @@ def test_backlash(claim):
 
 
 def test_dragged_load_does_not_stick(claim):
-    """Friction that is the same at rest and in motion: the load starts late, and never sticks again.
+    """Friction alike at rest and in motion: the load starts late, and never sticks again.
 
     The handbook's stick-slip needs a static friction above the sliding one; with both alike its
     formulas give a stick time of zero and a load that swings between standing and twice the speed.
@@ -258,7 +258,7 @@ def test_dragged_load_does_not_stick(claim):
 
 
 def test_overrunning_clutch(claim):
-    """A wheel that runs ahead of its drive is let go; the drive takes it again when it has slowed."""
+    """A wheel that runs ahead of its drive is let go, and taken again when it has slowed."""
     drive = 'kind = "speed"\nchain_speed = "0.1 m/s"\noverrunning = true\n'
     rig = bare(drive, 1200, "2 mN m")
     profile(rig, 1.0)
@@ -348,7 +348,7 @@ def test_supply_cut_open_and_shorted(claim):
 
 
 def test_knock_momentum(claim):
-    """A knock of the frame moves what floats in it by the pulse's own integral; its work is booked."""
+    """A knock of the frame moves what floats in it by the pulse's integral; its work is booked."""
 
     rig = Rig(rig_text()).afloat()
     masses = rig.masses()

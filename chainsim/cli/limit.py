@@ -9,7 +9,7 @@ import click
 from chainsim.cli.frame import HOLDS, command, json_option, print_json, set_option
 from chainsim.cli.quantities import as_recorded
 from chainsim.cli.repeats import bench_for
-from chainsim.cli.screen import heading, say, show, tell_remarks
+from chainsim.cli.screen import say, show, tell_remarks
 from chainsim.errors import CallError
 
 
@@ -120,5 +120,5 @@ def _limits(
         data = limit_data(found, beside)
         answers.append(data | {"unit": as_recorded(data["unit"])})
         if not as_json:
-            show(heading(question.title), limit_table(found, beside))
+            show("", limit_table(found, beside))
     return answers[0] if len(answers) == 1 else {"question": what, "answers": answers}

@@ -152,7 +152,7 @@ def mend_table(found: Sequence[Mend]) -> Group:
             Text(change.text),
             f"{change.value / change.present - 1:+.0%}",
             f"{bad.value:.4g} (run {bad.row.id})",
-            Text.assemble(outcome_text(good.outcome(())), f" (run {good.row.id})"),
+            Text.assemble(outcome_text(change.outcome), f" (run {good.row.id})"),
         )
     return Group(Text(f"The smallest single change that turns it: {found[0].text}."), table)
 

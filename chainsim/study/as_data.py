@@ -126,6 +126,7 @@ def mend_data(found: Sequence[Mend]) -> list[dict[str, Any]]:
             "value": change.value,
             "change": change.text,
             "size": change.size,
+            "outcome": change.outcome,
             "proof": [_probe(probe) for probe in change.proof],
         }
         for change in found

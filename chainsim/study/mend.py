@@ -44,6 +44,8 @@ class Mend:
         (dimensionless).
     proof : tuple of Probe
         The run that still fails and the run that no longer does.
+    outcome : str
+        Outcome of the latter, for the findings that count: `holds` or `close`.
     """
 
     key: str
@@ -52,6 +54,7 @@ class Mend:
     text: str
     size: float
     proof: tuple[Probe, Probe]
+    outcome: str
 
 
 def mend(
@@ -137,7 +140,9 @@ def _mend_by(
         good = [way for way, probe in tried.items() if probe.outcome(names) != FAILS]
         if good:
             ends = [_narrowed(bench, key, names, bad[w], tried[w], whole) for w in good]
-            return min((_told(leaf, float(value), *pair_) for pair_ in ends), key=lambda m: m.size)
+            return min(
+                (_told(leaf, float(value), names, *pair_) for pair_ in ends), key=lambda m: m.size
+            )
         bad.update(tried)
     return None
 
@@ -162,7 +167,7 @@ def _narrowed(
     return bad, good
 
 
-def _told(leaf: Any, present: float, bad: Probe, good: Probe) -> Mend:
+def _told(leaf: Any, present: float, names: tuple[str, ...], bad: Probe, good: Probe) -> Mend:
     kind = leaf.unit_kind
     before, after = (
         (format_si(present, kind), format_si(good.value, kind))
@@ -176,4 +181,5 @@ def _told(leaf: Any, present: float, bad: Probe, good: Probe) -> Mend:
         text=f"{leaf.key}: {before} → {after}",
         size=abs(math.log(good.value / present)),
         proof=(bad, good),
+        outcome=good.outcome(names),
     )

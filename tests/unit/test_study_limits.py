@@ -186,6 +186,7 @@ def test_a_mend_is_the_smallest_single_change_with_its_proof():
     assert (bad.outcome(()), good.outcome(())) == ("fails", "close")
     assert best.text.startswith("sprocket.tail.mount.mass: 200 g → ")
     assert other.value == 6.0
+    assert best.outcome == "close"
 
 
 def test_a_lift_that_does_not_fail_needs_no_mend():

@@ -116,12 +116,12 @@ def measure() -> dict[str, float]:
     """Measure everything on this machine."""
     found: dict[str, float] = {}
     found["points"] = timed(lambda: plan_points(400))[1] / 400
-    found["serial"] = per_run(SerialEngine(), 800)
-    found["processes"] = per_run(ProcessEngine(cores()), 800)
+    found["serial"] = per_run(SerialEngine(), 400)
+    found["processes"] = per_run(ProcessEngine(cores()), 400)
     try:
         from chainsim.study.cluster import DaskEngine
 
-        found["dask"] = per_run(DaskEngine(cores()), 400)
+        found["dask"] = per_run(DaskEngine(cores()), 200)
     except ImportError:
         found["dask"] = float("nan")
     listed = plan_points(500)

@@ -58,7 +58,7 @@ def test_load_runs_back(claim):
 
 
 def test_hung_unit_turns_until_its_weight_balances_the_torque(claim):
-    """The drive unit hangs in the loop and carries its motor: its mean lean, against the free body."""
+    """The drive unit hangs in the loop and carries its motor: how far it leans, free body."""
     rec = lifted(
         200,
         *HELD,

@@ -13,7 +13,10 @@ HELD = (
 )
 LOADED = ('rate = "1.5 /s" }', 'rate = "1.5 /s" }\nstart = "loaded"')
 STOP = '[[event]]\nat = "2 s"\nkind = "stop"\n[[event]]\nat = "3 s"\nkind = "start"\n'
-KNOCK = '[[event]]\nat = "2 s"\nkind = "knock"\nduration = "20 ms"\nacceleration = "40 m/s2"\ndirection = "20 deg"\n'
+KNOCK = (
+    '[[event]]\nat = "2 s"\nkind = "knock"\nduration = "20 ms"\n'
+    'acceleration = "40 m/s2"\ndirection = "20 deg"\n'
+)
 CASES = {
     "held balls, loaded and unloaded": (HELD, STOP),
     "rolling balls, all kept": ((), ""),

@@ -219,7 +219,9 @@ the measured ones by the rules that stand beside them.
 The time is runs × time of a run / workers. A single driver hands out a run in the time that
 the engine adds to it, so it keeps at most {most:.0f} workers of a dask cluster busy; beyond
 that the plan is divided with `--part i/n` into job arrays, each with its own driver, its own
-index and the same folder: nothing is shared but the run files.
+index and the same folder: nothing is shared but the run files. That number is a pessimist's:
+what dask adds was measured with its scheduler and its workers on the same few cores, beside
+other programs.
 
 {table(("a million runs need", ""), needed_rows(found))}
 

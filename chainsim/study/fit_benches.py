@@ -323,7 +323,7 @@ def _rate(moved: np.ndarray, interval: float) -> float:
     return 2.0 * math.pi * peak / (size * interval)
 
 
-BENCHES: Mapping[str, Callable[[Any, Measurement], Bench]] = {
+BENCHES: Mapping[str, Callable[..., Any]] = {
     "stretch": StretchBench,
     "decay": DecayBench,
     "tilt": TiltBench,

@@ -35,7 +35,7 @@ def bench(task="free_body", scenario=None):
 
 def test_the_value_that_turns_a_finding_is_to_be_measured_first():
     # The task holds while the link mass, which the kind of chain leaves open, is high enough.
-    tried = ("chain.link_stiffness", "chain.joint.friction", "chain.link_mass")
+    tried = ("chain.link_stiffness", "chain.link_damping", "chain.link_mass")
     with bench("link_mass_decides") as one:
         found = unsure(lift(), one, tried)
     assert found[0].key == "chain.link_mass"

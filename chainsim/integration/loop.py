@@ -60,7 +60,6 @@ class Simulation:
         self._filled = 0
         self._worst = Worst(self.prepared)
         self._skipped = np.zeros(len(lift.wheels))
-        self._off = np.zeros(len(lift.wheels), np.int64)
         self._events: list[Event] = []
         self._energy_at_start: float | None = None
 
